@@ -73,6 +73,8 @@ pub mod direction;
 pub mod finder;
 mod line;
 mod objective;
+#[cfg(feature = "problems")]
+pub mod problems;
 mod real;
 pub mod search;
 pub mod vector;
