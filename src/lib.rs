@@ -56,6 +56,7 @@
 //! Lipschitz continuous gradient, so a gradient method converges to stationary points. With sufficient decrease alone it
 //! needs a backtracking finder whose first trial is not too short.
 //!
+//! When nothing works: the [guide].
 
 #![no_std]
 
@@ -68,9 +69,12 @@ extern crate std;
 compile_error!("surefoot needs square roots: switch on the feature `std` or the feature `libm`");
 
 pub mod acceptance;
+#[cfg(feature = "alloc")]
+pub mod audit;
 pub mod descent;
 pub mod direction;
 pub mod finder;
+pub mod guide;
 mod line;
 mod objective;
 #[cfg(feature = "problems")]
