@@ -14,24 +14,31 @@ const SHORT: f64 = 4.0;
 /// What the trials of a search showed about the slope at its start; kept beside the log, which forgets.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct Evidence<T> {
-    /// The first, the shortest and the longest step with a finite value.
-    steps: Option<[T; 3]>,
+    /// The shortest and the longest step with a finite value, and the first; infinity and 0 before there is one.
+    shortest: T,
+    longest: T,
+    first: T,
+    /// The decrease that the slope must promise for a difference of values to mean something.
+    telling: T,
     /// Whether all values equal the one at the start.
     flat: bool,
     /// The longest step that was too short.
     too_short: Option<T>,
     /// Whether a difference of values that means something was refused as too short: then the slope is not to blame.
     fell: bool,
-    /// The shortest step at which a difference of values still means something, and the mean slope up to there.
+    /// The shortest step at which a difference of values still means something, and the value there.
     near: Option<(T, T)>,
     /// The same for the shortest one that is at least twice as long.
     further: Option<(T, T)>,
 }
 
 impl<T: Real> Evidence<T> {
-    pub(super) fn new() -> Self {
+    pub(super) fn new(ray: &Ray<T>) -> Self {
         Evidence {
-            steps: None,
+            shortest: T::infinity(),
+            longest: T::zero(),
+            first: T::zero(),
+            telling: T::of(TELLING) * resolved(ray),
             flat: true,
             too_short: None,
             fell: false,
@@ -40,35 +47,40 @@ impl<T: Real> Evidence<T> {
         }
     }
 
-    /// Takes in a refused trial.
+    /// Takes in a refused trial. It is on the way of every one: no divisions.
+    #[inline]
     pub(super) fn note(&mut self, ray: &Ray<T>, trial: &Trial<T>, side: Side) {
         let step = trial.step;
         self.flat = self.flat && trial.value == ray.value;
-        self.steps = Some(match self.steps {
-            None => [step; 3],
-            Some([first, shortest, longest]) => [first, shortest.min(step), longest.max(step)],
-        });
+        if self.longest == T::zero() {
+            self.first = step;
+        }
+        if step < self.shortest {
+            self.shortest = step;
+        }
+        if step > self.longest {
+            self.longest = step;
+        }
         if side == Side::TooShort {
             self.too_short = Some(self.too_short.map_or(step, |a| a.max(step)));
         }
-        if -ray.slope * step < T::of(TELLING) * resolved(ray) {
+        if -ray.slope * step < self.telling {
             return;
         }
         self.fell = self.fell || side == Side::TooShort;
-        let two = T::of(2.0);
-        let measured = (step, (trial.value - ray.value) / step);
+        let here = (step, trial.value);
         match self.near {
             Some((near, _)) if step >= near => {
                 let closer = self.further.is_none_or(|(further, _)| step < further);
-                if closer && step >= two * near {
-                    self.further = Some(measured);
+                if closer && step >= near + near {
+                    self.further = Some(here);
                 }
             }
             near => {
                 self.further = near
-                    .filter(|(near, _)| *near >= two * step)
+                    .filter(|(near, _)| *near >= step + step)
                     .or(self.further);
-                self.near = Some(measured);
+                self.near = Some(here);
             }
         }
     }
@@ -80,24 +92,25 @@ impl<T: Real> Evidence<T> {
 
     /// The diagnosis where all values equal the one at the start.
     pub(super) fn of_flatness(&self, ray: &Ray<T>) -> Option<Ending<T>> {
-        let [_, shortest, longest] = self.steps?;
-        (shortest < longest && self.flat).then_some(Ending::Flat {
+        (self.shortest < self.longest && self.flat).then_some(Ending::Flat {
             value: ray.value,
             slope: ray.slope,
-            step: longest,
+            step: self.longest,
         })
     }
 
     /// The diagnosis where all trials at which a difference of values means something were too long, and those differences
     /// have settled, to a fifth of the slope, on something else than it.
     pub(super) fn of_the_slope(&self, ray: &Ray<T>) -> Option<Ending<T>> {
-        let ([first, ..], false) = (self.steps?, self.fell) else {
+        if self.fell {
             return None;
-        };
-        let ((step, measured), (_, further)) = (self.near?, self.further?);
+        }
+        let mean_slope = |(step, value): (T, T)| (value - ray.value) / step;
+        let (near, further) = (self.near?, self.further?);
+        let (step, measured, further) = (near.0, mean_slope(near), mean_slope(further));
         let slope = ray.slope.abs();
         let settled = (measured - further).abs() <= T::of(0.2) * measured.abs().max(slope);
-        let wrong = settled && measured > T::of(0.5) * ray.slope && is_short(ray, step, first);
+        let wrong = settled && measured > T::of(0.5) * ray.slope && is_short(ray, step, self.first);
         wrong.then_some(Ending::WrongSlope {
             slope: ray.slope,
             measured,
@@ -107,9 +120,8 @@ impl<T: Real> Evidence<T> {
 
     /// The diagnosis where the shortest step promised too little.
     pub(super) fn of_rounding(&self, ray: &Ray<T>) -> Option<Ending<T>> {
-        let [_, shortest, _] = self.steps?;
-        let (promised, resolved) = (-ray.slope * shortest, resolved(ray));
-        let drowned = promised <= T::of(TELLING) * resolved;
+        let (promised, resolved) = (-ray.slope * self.shortest, resolved(ray));
+        let drowned = promised <= self.telling; // not where nothing was finite: then it is infinite
         drowned.then_some(Ending::BelowRounding { promised, resolved })
     }
 }

@@ -68,6 +68,7 @@ impl<T: Real> Guard<T> {
     }
 
     /// A finite trial was refused.
+    #[inline]
     pub(super) fn refused(&mut self, step: T, side: Side) {
         let (short, high) = (self.short, self.high());
         match side {
@@ -118,6 +119,7 @@ impl<T: Real> Guard<T> {
         self.long.or(self.edge)
     }
 
+    #[inline]
     fn measure(&mut self) {
         let Some(high) = self.high() else { return };
         let width = high - self.short;
@@ -130,6 +132,7 @@ impl<T: Real> Guard<T> {
     }
 
     /// Where the next trial goes, for a proposal of the finder (`None` where it has no say).
+    #[inline]
     pub(super) fn place(&mut self, proposal: Option<T>, limits: &Limits<T>) -> Place<T> {
         let (short, high) = (self.short, self.high());
         if short >= limits.upper() {

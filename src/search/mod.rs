@@ -206,7 +206,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
             phase: Phase::Idle,
             origin: Origin::First,
             guard: Guard::new(T::one()),
-            evidence: Evidence::new(),
+            evidence: Evidence::new(&Ray::new(T::zero(), T::zero())),
             best: None,
             accepted: None,
             log: Log::new(),
@@ -270,7 +270,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
         self.ray.decrease = self.rule.decrease();
         let first = self.in_force.nearest(first);
         self.guard = Guard::new(first);
-        self.evidence = Evidence::new();
+        self.evidence = Evidence::new(&self.ray);
         let step = self.finder.begin(&self.ray, first);
         let step = if step > T::zero() && step.is_finite() {
             self.in_force.nearest(step)
@@ -283,6 +283,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
     }
 
     /// What to evaluate next; `None` before the first search and after the end. Asking twice changes nothing.
+    #[inline]
     pub fn request(&self) -> Option<Ask<T>> {
         match self.phase {
             Phase::Value { step } => Some(Ask {
@@ -304,6 +305,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
     ///
     /// # Errors
     /// [`WrongReply`] if it does not answer the request; the request stands.
+    #[inline]
     pub fn supply(&mut self, sample: Sample<T>) -> Result<(), WrongReply> {
         match (self.phase, sample) {
             (Phase::Idle | Phase::Ended(_), _) => return Err(WrongReply::NothingAsked),
@@ -403,6 +405,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
         (self.finder, self.rule)
     }
 
+    #[inline]
     fn valued(&mut self, step: T, value: T, slope: Option<T>) {
         let trial = Trial { step, value, slope };
         if value.is_finite() && slope.is_none_or(T::is_finite) {
@@ -427,6 +430,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
         }
     }
 
+    #[inline]
     fn judge(&mut self, trial: Trial<T>) {
         let unknown = trial.slope.is_none();
         let settled = match self.rule.judge(&self.ray, &trial) {
@@ -483,6 +487,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
         }
     }
 
+    #[inline]
     fn refuse(&mut self, trial: Trial<T>, side: Side) {
         self.log.write(trial, self.origin, Fate::Refused(side));
         self.note_best(trial);
@@ -521,6 +526,7 @@ impl<T: Real, F: StepFinder<T>, A: Acceptance<T>> StepSearch<T, F, A> {
     }
 
     /// Goes on to the finder's proposal, or to where the guard puts the trial instead; `own` names the latter.
+    #[inline]
     fn go_on(&mut self, proposal: Option<T>, own: Origin) {
         let (step, origin) = match self.guard.place(proposal, &self.in_force) {
             Place::Proposed(step) => (step, Origin::Finder),
