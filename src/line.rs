@@ -76,6 +76,11 @@ impl<T: Real> Ray<T> {
         }
     }
 
+    /// The line of sufficient decrease with its noise allowance: `reference + decrease a phi'(0) + 2 noise`.
+    pub(crate) fn decrease_limit(&self, decrease: T, step: T) -> T {
+        self.reference + decrease * step * self.slope + T::of(2.0) * self.value_noise
+    }
+
     /// What is wrong with it for a rule that needs a slope at the start, or does not.
     pub(crate) fn fault(&self, needs_slope: bool) -> Option<RayFault> {
         let zero = T::zero();

@@ -1,6 +1,6 @@
 //! The approximate Wolfe rule, for where the decrease drowns in rounding.
 
-use super::{Acceptance, WolfeError, decrease_limit, sufficient_decrease};
+use super::{Acceptance, WolfeError, slope_has_risen, sufficient_decrease};
 use crate::{Condition, Ray, Real, Side, Trial, Verdict};
 
 /// Hager and Zhang's pair of rules: weak Wolfe, and near rounding the approximate Wolfe conditions
@@ -55,10 +55,6 @@ impl<T: Real> ApproximateWolfe<T> {
         }
     }
 
-    fn has_risen(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
-        Condition::at_least("curvature", slope, self.curvature * ray.slope)
-    }
-
     /// The first Wolfe condition, in slopes: eq. 4.1.
     fn decrease_by_slope(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
         let share = T::of(2.0) * self.decrease - T::one();
@@ -94,7 +90,9 @@ impl<T: Real> Acceptance<T> for ApproximateWolfe<T> {
         }
         match trial.slope {
             None => Verdict::NeedsSlope,
-            Some(slope) if !self.has_risen(ray, slope).holds => Verdict::Refuse(Side::TooShort),
+            Some(slope) if !slope_has_risen(ray, self.curvature, slope).holds => {
+                Verdict::Refuse(Side::TooShort)
+            }
             Some(slope) if decreased || self.decrease_by_slope(ray, slope).holds => Verdict::Accept,
             Some(_) => Verdict::Refuse(Side::TooLong),
         }
@@ -109,7 +107,7 @@ impl<T: Real> Acceptance<T> for ApproximateWolfe<T> {
         Some(self.decrease)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        let limit = decrease_limit(ray, self.decrease, step);
+        let limit = ray.decrease_limit(self.decrease, step);
         let slack = ray.slack.unwrap_or_else(T::zero);
         let relaxed = ray.reference + slack + T::of(2.0) * ray.value_noise;
         Some(if ray.slack.is_some() {
@@ -124,7 +122,7 @@ impl<T: Real> Acceptance<T> for ApproximateWolfe<T> {
             each(self.within_slack(ray, slack, trial));
         }
         if let Some(slope) = trial.slope {
-            each(self.has_risen(ray, slope));
+            each(slope_has_risen(ray, self.curvature, slope));
             if ray.slack.is_some() {
                 each(self.decrease_by_slope(ray, slope));
             }

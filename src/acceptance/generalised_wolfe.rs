@@ -1,6 +1,6 @@
 //! Wolfe conditions with separate bounds on the slope to the left and to the right.
 
-use super::{Acceptance, decrease_limit, sufficient_decrease};
+use super::{Acceptance, slope_has_risen, slope_not_too_positive, sufficient_decrease};
 use crate::{Condition, Ray, Real, Side, Trial, Verdict};
 
 /// Generalised Wolfe: sufficient decrease, and `left phi'(0) <= phi'(a) <= -right phi'(0)`.
@@ -60,14 +60,6 @@ impl<T: Real> GeneralisedWolfe<T> {
             })
         }
     }
-
-    fn has_risen(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
-        Condition::at_least("curvature", slope, self.left * ray.slope)
-    }
-
-    fn not_too_positive(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
-        Condition::at_most("slope not too positive", slope, -(self.right * ray.slope))
-    }
 }
 
 impl<T: Real> Acceptance<T> for GeneralisedWolfe<T> {
@@ -77,8 +69,10 @@ impl<T: Real> Acceptance<T> for GeneralisedWolfe<T> {
         }
         match trial.slope {
             None => Verdict::NeedsSlope,
-            Some(slope) if !self.has_risen(ray, slope).holds => Verdict::Refuse(Side::TooShort),
-            Some(slope) if self.not_too_positive(ray, slope).holds => Verdict::Accept,
+            Some(slope) if !slope_has_risen(ray, self.left, slope).holds => {
+                Verdict::Refuse(Side::TooShort)
+            }
+            Some(slope) if slope_not_too_positive(ray, self.right, slope).holds => Verdict::Accept,
             Some(_) => Verdict::Refuse(Side::TooLong),
         }
     }
@@ -89,13 +83,13 @@ impl<T: Real> Acceptance<T> for GeneralisedWolfe<T> {
         Some(self.decrease)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        Some(decrease_limit(ray, self.decrease, step))
+        Some(ray.decrease_limit(self.decrease, step))
     }
     fn explain(&self, ray: &Ray<T>, trial: &Trial<T>, each: &mut dyn FnMut(Condition<T>)) {
         each(sufficient_decrease(ray, self.decrease, trial));
         if let Some(slope) = trial.slope {
-            each(self.has_risen(ray, slope));
-            each(self.not_too_positive(ray, slope));
+            each(slope_has_risen(ray, self.left, slope));
+            each(slope_not_too_positive(ray, self.right, slope));
         }
     }
 }

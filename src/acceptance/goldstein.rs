@@ -1,6 +1,6 @@
 //! The Goldstein rule.
 
-use super::{Acceptance, decrease_limit, sufficient_decrease};
+use super::{Acceptance, sufficient_decrease};
 use crate::{Condition, Ray, Real, Side, Trial, Verdict};
 
 /// Goldstein: `phi(0) + (1 - c) a phi'(0) <= phi(a) <= phi(0) + c a phi'(0)`.
@@ -83,7 +83,7 @@ impl<T: Real> Acceptance<T> for Goldstein<T> {
         Some(self.share)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        Some(decrease_limit(ray, self.share, step))
+        Some(ray.decrease_limit(self.share, step))
     }
     fn explain(&self, ray: &Ray<T>, trial: &Trial<T>, each: &mut dyn FnMut(Condition<T>)) {
         each(sufficient_decrease(ray, self.share, trial));

@@ -123,13 +123,18 @@ impl<T, A: Acceptance<T> + ?Sized> Acceptance<T> for alloc::boxed::Box<A> {
 #[cfg(feature = "alloc")]
 pub type BoxedRule<T> = alloc::boxed::Box<dyn Acceptance<T> + Send + Sync>;
 
-/// The line of sufficient decrease with its noise allowance: `reference + decrease a phi'(0) + 2 noise`.
-fn decrease_limit<T: Real>(ray: &Ray<T>, decrease: T, step: T) -> T {
-    ray.reference + decrease * step * ray.slope + T::of(2.0) * ray.value_noise
-}
-
 /// The first Wolfe condition as a [`Condition`].
 fn sufficient_decrease<T: Real>(ray: &Ray<T>, decrease: T, trial: &Trial<T>) -> Condition<T> {
-    let limit = decrease_limit(ray, decrease, trial.step);
+    let limit = ray.decrease_limit(decrease, trial.step);
     Condition::at_most("sufficient decrease", trial.value, limit)
+}
+
+/// The second Wolfe condition: the slope has risen to a share of what it was.
+fn slope_has_risen<T: Real>(ray: &Ray<T>, curvature: T, slope: T) -> Condition<T> {
+    Condition::at_least("curvature", slope, curvature * ray.slope)
+}
+
+/// What a strong rule adds: the slope is not too positive either.
+fn slope_not_too_positive<T: Real>(ray: &Ray<T>, curvature: T, slope: T) -> Condition<T> {
+    Condition::at_most("slope not too positive", slope, -(curvature * ray.slope))
 }

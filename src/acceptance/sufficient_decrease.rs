@@ -1,6 +1,6 @@
 //! The Armijo condition on its own.
 
-use super::{Acceptance, decrease_limit, sufficient_decrease};
+use super::{Acceptance, sufficient_decrease};
 use crate::{Condition, Ray, Real, Side, Trial, Verdict};
 
 /// Sufficient decrease (Armijo): `phi(a) <= phi(0) + c1 a phi'(0)`.
@@ -74,7 +74,7 @@ impl<T: Real> Acceptance<T> for SufficientDecrease<T> {
         Some(self.decrease)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        Some(decrease_limit(ray, self.decrease, step))
+        Some(ray.decrease_limit(self.decrease, step))
     }
     fn explain(&self, ray: &Ray<T>, trial: &Trial<T>, each: &mut dyn FnMut(Condition<T>)) {
         each(sufficient_decrease(ray, self.decrease, trial));

@@ -1,6 +1,6 @@
 //! The Wolfe rules, weak and strong.
 
-use super::{Acceptance, decrease_limit, sufficient_decrease};
+use super::{Acceptance, slope_has_risen, slope_not_too_positive, sufficient_decrease};
 use crate::{Condition, Ray, Real, Side, Trial, Verdict};
 
 /// Weak Wolfe: sufficient decrease `phi(a) <= phi(0) + c1 a phi'(0)` and curvature `phi'(a) >= c2 phi'(0)`.
@@ -97,18 +97,6 @@ impl<T: Real> Wolfe<T> {
             curvature: T::of(0.9),
         }
     }
-
-    fn slope_has_risen(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
-        Condition::at_least("curvature", slope, self.curvature * ray.slope)
-    }
-
-    fn slope_is_not_too_positive(&self, ray: &Ray<T>, slope: T) -> Condition<T> {
-        Condition::at_most(
-            "slope not too positive",
-            slope,
-            -(self.curvature * ray.slope),
-        )
-    }
 }
 
 impl<T: Real> WeakWolfe<T> {
@@ -152,7 +140,7 @@ impl<T: Real> Acceptance<T> for WeakWolfe<T> {
         }
         match trial.slope {
             None => Verdict::NeedsSlope,
-            Some(slope) if self.0.slope_has_risen(ray, slope).holds => Verdict::Accept,
+            Some(slope) if slope_has_risen(ray, self.0.curvature, slope).holds => Verdict::Accept,
             Some(_) => Verdict::Refuse(Side::TooShort),
         }
     }
@@ -163,12 +151,12 @@ impl<T: Real> Acceptance<T> for WeakWolfe<T> {
         Some(self.0.decrease)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        Some(decrease_limit(ray, self.0.decrease, step))
+        Some(ray.decrease_limit(self.0.decrease, step))
     }
     fn explain(&self, ray: &Ray<T>, trial: &Trial<T>, each: &mut dyn FnMut(Condition<T>)) {
         each(sufficient_decrease(ray, self.0.decrease, trial));
         if let Some(slope) = trial.slope {
-            each(self.0.slope_has_risen(ray, slope));
+            each(slope_has_risen(ray, self.0.curvature, slope));
         }
     }
 }
@@ -180,10 +168,12 @@ impl<T: Real> Acceptance<T> for StrongWolfe<T> {
         }
         match trial.slope {
             None => Verdict::NeedsSlope,
-            Some(slope) if !self.0.slope_has_risen(ray, slope).holds => {
+            Some(slope) if !slope_has_risen(ray, self.0.curvature, slope).holds => {
                 Verdict::Refuse(Side::TooShort)
             }
-            Some(slope) if self.0.slope_is_not_too_positive(ray, slope).holds => Verdict::Accept,
+            Some(slope) if slope_not_too_positive(ray, self.0.curvature, slope).holds => {
+                Verdict::Accept
+            }
             Some(_) => Verdict::Refuse(Side::TooLong),
         }
     }
@@ -194,13 +184,13 @@ impl<T: Real> Acceptance<T> for StrongWolfe<T> {
         Some(self.0.decrease)
     }
     fn ceiling(&self, ray: &Ray<T>, step: T) -> Option<T> {
-        Some(decrease_limit(ray, self.0.decrease, step))
+        Some(ray.decrease_limit(self.0.decrease, step))
     }
     fn explain(&self, ray: &Ray<T>, trial: &Trial<T>, each: &mut dyn FnMut(Condition<T>)) {
         each(sufficient_decrease(ray, self.0.decrease, trial));
         if let Some(slope) = trial.slope {
-            each(self.0.slope_has_risen(ray, slope));
-            each(self.0.slope_is_not_too_positive(ray, slope));
+            each(slope_has_risen(ray, self.0.curvature, slope));
+            each(slope_not_too_positive(ray, self.0.curvature, slope));
         }
     }
 }

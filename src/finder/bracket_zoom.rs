@@ -176,7 +176,7 @@ impl<T: Real> Zoom<T> {
 /// Sufficient decrease, with the rule's parameter where it has one.
 fn has_decreased<T: Real>(ray: &Ray<T>, trial: &Trial<T>) -> bool {
     let decrease = ray.decrease.unwrap_or_else(|| T::of(1e-4));
-    trial.value <= ray.reference + decrease * trial.step * ray.slope + T::of(2.0) * ray.value_noise
+    trial.value <= ray.decrease_limit(decrease, trial.step)
 }
 
 fn grown<T: Real>(before: &Point<T>, here: &Point<T>) -> T {
