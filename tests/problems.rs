@@ -51,13 +51,22 @@ fn rows() -> Vec<Row> {
         .collect()
 }
 
+/// Number, `n`, `m`.
+fn key(problem: &Problem) -> (u32, usize, usize) {
+    (
+        problem.number().unwrap(),
+        problem.dim(),
+        problem.residual_count().unwrap(),
+    )
+}
+
 /// Each instance of the library with its rows of the data file.
 fn instances() -> Vec<(Problem, Vec<Row>)> {
     let mut rows = rows();
     more_garbow_hillstrom()
         .into_iter()
         .map(|problem| {
-            let key = (problem.number(), problem.dim(), problem.residual_count());
+            let key = key(&problem);
             let (own, rest) = rows
                 .drain(..)
                 .partition(|row| (row.number, row.n, row.m) == key);
@@ -84,7 +93,7 @@ fn max_abs(x: &[f64]) -> f64 {
 fn label(problem: &Problem) -> String {
     format!(
         "{} {} n = {}",
-        problem.number(),
+        problem.number().unwrap(),
         problem.name(),
         problem.dim()
     )
@@ -94,17 +103,14 @@ fn label(problem: &Problem) -> String {
 
 #[test]
 fn the_list_has_every_stored_instance_once_and_in_order() {
-    let keys: Vec<_> = more_garbow_hillstrom()
-        .iter()
-        .map(|p| (p.number(), p.dim(), p.residual_count()))
-        .collect();
+    let keys: Vec<_> = more_garbow_hillstrom().iter().map(key).collect();
     let mut stored: Vec<_> = rows()
         .iter()
         .map(|row| (row.number, row.n, row.m))
         .collect();
     stored.dedup();
     assert_eq!(keys, stored);
-    assert_eq!(keys.len(), 26);
+    assert_eq!(keys.len(), 45);
 }
 
 #[test]
@@ -134,8 +140,10 @@ fn starts_and_minima_are_the_stored_ones() {
 #[test]
 fn printed_minima_come_out_to_every_printed_digit() {
     for row in rows().iter().filter(|row| is_minimum(row)) {
-        if (row.number, row.f) == (26, 2.7950561218794563e-5) {
-            continue; // a local minimum that the paper does not print
+        if row.printed.is_empty() {
+            // Local minima that the paper does not print.
+            assert!([26, 31].contains(&row.number), "{}", row.number);
+            continue;
         }
         let printed: f64 = row.printed.parse().unwrap();
         // One unit of the last of six printed digits; a printed 0 is exact.
@@ -188,8 +196,10 @@ fn values_and_gradients_agree_with_25_digits() {
 /// `eps sum_k |H_jk| |x_k|` and a value by `2 sqrt(f) eps N + (eps N)^2`, `N^2 = |x|' |H| |x| / 2`, `H` the Hessian.
 #[test]
 fn minima_are_stationary_and_have_their_values() {
-    /// Worst found: 0.7 for gradients (problem 26), 0.2 for values (problem 35).
+    /// Worst found: 0.7 for gradients (problem 26), 0.2 for values (problem 35), without problem 29.
     const MARGIN: f64 = 2.0;
+    /// There `x + t + 1` is rounded, which is ten times `x` and more. Worst found: 2.2.
+    const MARGIN_OF_29: f64 = 4.0;
     for (problem, rows) in instances() {
         for row in rows
             .iter()
@@ -197,9 +207,14 @@ fn minima_are_stationary_and_have_their_values() {
         {
             let uncertain = uncertainties(&problem, &row.x);
             let g = gradient(&problem, &row.x);
+            let margin = if row.number == 29 {
+                MARGIN_OF_29
+            } else {
+                MARGIN
+            };
             for (j, (g, uncertain)) in g.iter().zip(&uncertain).enumerate() {
                 assert!(
-                    g.abs() <= MARGIN * uncertain,
+                    g.abs() <= margin * uncertain,
                     "{} {}: g{} = {g:e} {uncertain:e}",
                     label(&problem),
                     row.role,
@@ -330,7 +345,7 @@ fn problem_gradients_agree_with_central_differences() {
     }
     let Comparisons { all, sharp } = comparisons;
     // The others are components that vanish, at minima most of all, or drown in f (problem 4).
-    assert!(all == 1269 && sharp > 1080, "{sharp} of {all}");
+    assert!(all == 4431 && sharp > 3900, "{sharp} of {all}");
 }
 
 /// The start, the check point and points scattered about them and about the minimizers.
@@ -443,7 +458,36 @@ fn a_wrong_size_is_an_error_that_says_what_to_do() {
         text(gulf(101)),
         "Gulf research and development has no size 101; choose a size of at most 100"
     );
-    for made in [variably_dimensioned(0), trigonometric(0), chebyquad(0)] {
+    assert_eq!(
+        text(extended_powell_singular(6)),
+        "Extended Powell singular has no size 6; choose a multiple of 4, at least 4"
+    );
+    assert_eq!(
+        text(linear_full_rank(10, 9)),
+        "The set of residuals of the linear function has no size 9; choose a size of at least 10"
+    );
+    for made in [
+        extended_rosenbrock(0),
+        extended_rosenbrock(3),
+        penalty_2(101),
+        brown_almost_linear(1),
+        linear_rank_1(0, 5),
+        linear_rank_1(5, 4),
+        linear_rank_1_with_zeros(2, 5),
+        linear_rank_1_with_zeros(5, 4),
+    ] {
+        assert!(made.is_err());
+    }
+    for made in [
+        variably_dimensioned(0),
+        trigonometric(0),
+        chebyquad(0),
+        penalty_1(0),
+        discrete_boundary_value(0),
+        discrete_integral_equation(0),
+        broyden_tridiagonal(0),
+        broyden_banded(0),
+    ] {
         assert!(matches!(
             made,
             Err(WrongSize::TooSmall {
@@ -459,9 +503,26 @@ fn a_wrong_size_is_an_error_that_says_what_to_do() {
         chebyquad(1),
         watson(2),
         gulf(3),
+        extended_rosenbrock(2),
+        extended_powell_singular(4),
+        penalty_1(1),
+        penalty_2(2),
+        brown_almost_linear(2),
+        discrete_boundary_value(1),
+        discrete_integral_equation(1),
+        broyden_tridiagonal(1),
+        broyden_banded(1),
+        linear_full_rank(1, 1),
+        linear_rank_1(1, 1),
+        linear_rank_1_with_zeros(3, 3),
     ] {
         let problem = made.unwrap();
         assert!(problem.value(problem.start()).unwrap().is_finite());
+        assert!(
+            gradient(&problem, problem.start())
+                .iter()
+                .all(|g| g.is_finite())
+        );
     }
 }
 

@@ -41,6 +41,16 @@ pub enum WrongSize {
         /// The greatest size.
         greatest: usize,
     },
+    /// `found` is not one of the sizes that the words name, such as the multiples of 3.
+    #[error("{problem} has no size {found}; choose {sizes}")]
+    NotAmong {
+        /// The name of the problem.
+        problem: &'static str,
+        /// The size asked for.
+        found: usize,
+        /// The sizes in words.
+        sizes: &'static str,
+    },
 }
 
 impl WrongSize {
@@ -67,4 +77,24 @@ impl WrongSize {
         }
         Ok(())
     }
+
+    /// Fails unless `found` is a positive multiple of `of`, which `sizes` says in words.
+    pub(super) fn check_multiple(
+        problem: &'static str,
+        found: usize,
+        of: usize,
+        sizes: &'static str,
+    ) -> Result<(), Self> {
+        if found == 0 || !found.is_multiple_of(of) {
+            return Err(WrongSize::NotAmong {
+                problem,
+                found,
+                sizes,
+            });
+        }
+        Self::check(problem, found, of..=GREATEST)
+    }
 }
+
+/// More components than this no vector of doubles has.
+pub(super) const GREATEST: usize = isize::MAX as usize / size_of::<f64>();

@@ -1,8 +1,10 @@
-//! A reference problem: a sum of squared residuals with its standard start and known minima.
+//! A reference problem: a formula with its standard start and known minima.
 
+use std::sync::Arc;
 use std::vec::Vec;
 
 use super::error::WrongLength;
+use super::formula::{Evaluate, Formula};
 use super::squares::Squares;
 use crate::{Cost, Objective};
 
@@ -11,10 +13,11 @@ pub(super) type Residuals = fn(x: &[f64], sum: &mut Squares<'_>);
 
 /// A minimization problem with a published start and known answers.
 ///
-/// `f(x) = sum_{i=1..m} r_i(x)^2`, `x` of `n` components, no units. Values and gradients are
-/// analytic, in doubles, allocate nothing, and never panic: a slice of the wrong length is a
-/// [`WrongLength`], and a point where the formulas overflow gives infinities or NaN, as a step far
-/// too long should.
+/// `f(x)`, often `sum_{i=1..m} r_i(x)^2`, for an `x` of `n` components, no units. Values and
+/// gradients are analytic, in doubles, allocate nothing, and never panic: a slice of the wrong
+/// length is a [`WrongLength`], and a point where the formulas overflow gives infinities or NaN, as
+/// a step far too long should. A clone shares nothing that changes; its size is that of the start
+/// and of the stored minimizers.
 ///
 /// ```
 /// use surefoot::problems::more_garbow_hillstrom::rosenbrock;
@@ -28,13 +31,25 @@ pub(super) type Residuals = fn(x: &[f64], sum: &mut Squares<'_>);
 /// ```
 #[derive(Clone, Debug)]
 pub struct Problem {
-    number: u32,
+    number: Option<u32>,
     name: &'static str,
     source: &'static str,
-    residual_count: usize,
-    residuals: Residuals,
+    form: Form,
     start: Vec<f64>,
     minima: Vec<Minimum>,
+}
+
+/// How f is written down.
+#[derive(Clone, Debug)]
+enum Form {
+    /// A sum of `count` squares.
+    Residuals {
+        count: usize,
+        residuals: Residuals,
+        cost: Cost,
+    },
+    /// Value and gradient in one pass.
+    OnePass(Arc<dyn Evaluate>),
 }
 
 /// A known answer of a [`Problem`].
@@ -55,6 +70,14 @@ pub enum Minimum {
         /// The minimizer, rounded to doubles.
         point: Vec<f64>,
     },
+    /// A minimizer, local or global, whose point stands here in words only: its closed form, or what is known of it. It
+    /// spares problems of many variables a second vector of their size.
+    Described {
+        /// f there.
+        value: f64,
+        /// The point in words.
+        point: &'static str,
+    },
     /// A whole set of minimizers, such as a valley.
     Set {
         /// f on the set.
@@ -69,8 +92,8 @@ pub enum Minimum {
         /// The limit in words.
         limit: &'static str,
     },
-    /// A stationary point with a direction of negative curvature, listed because it was published
-    /// as a minimum and runs from the standard start end there.
+    /// A stationary point that is no minimizer, listed because it was published as one: f falls away
+    /// from it in some direction, by negative curvature or in a higher order.
     Saddle {
         /// f there.
         value: f64,
@@ -85,26 +108,27 @@ impl Minimum {
         match *self {
             Minimum::Strict { value, .. }
             | Minimum::Singular { value, .. }
+            | Minimum::Described { value, .. }
             | Minimum::Set { value, .. }
             | Minimum::AtInfinity { value, .. }
             | Minimum::Saddle { value, .. } => value,
         }
     }
 
-    /// The point, or `None` for a set and for a minimum at infinity.
+    /// The point, or `None` where there is no single one or it stands in words only.
     pub fn point(&self) -> Option<&[f64]> {
         match self {
             Minimum::Strict { point, .. }
             | Minimum::Singular { point, .. }
             | Minimum::Saddle { point, .. } => Some(point),
-            Minimum::Set { .. } | Minimum::AtInfinity { .. } => None,
+            Minimum::Described { .. } | Minimum::Set { .. } | Minimum::AtInfinity { .. } => None,
         }
     }
 }
 
 impl Problem {
-    /// The number in the source.
-    pub fn number(&self) -> u32 {
+    /// The number in the source, where that numbers its problems.
+    pub fn number(&self) -> Option<u32> {
         self.number
     }
 
@@ -123,9 +147,12 @@ impl Problem {
         self.start.len()
     }
 
-    /// The number of squared residuals `m`.
-    pub fn residual_count(&self) -> usize {
-        self.residual_count
+    /// The number of squared residuals `m`, where f is kept as a sum of such.
+    pub fn residual_count(&self) -> Option<usize> {
+        match self.form {
+            Form::Residuals { count, .. } => Some(count),
+            Form::OnePass(_) => None,
+        }
     }
 
     /// The standard start, `n` components.
@@ -146,9 +173,16 @@ impl Problem {
     /// [`WrongLength`] if `x` does not have `n` components.
     pub fn value(&self, x: &[f64]) -> Result<f64, WrongLength> {
         self.check("point", x)?;
-        let mut sum = Squares::new(self.residual_count, None);
-        (self.residuals)(x, &mut sum);
-        Ok(sum.value())
+        match &self.form {
+            Form::Residuals {
+                count, residuals, ..
+            } => {
+                let mut sum = Squares::new(*count, None);
+                residuals(x, &mut sum);
+                Ok(sum.value())
+            }
+            Form::OnePass(formula) => Ok(formula.value(x)),
+        }
     }
 
     /// Writes the gradient of f at `x` into `g`.
@@ -166,9 +200,16 @@ impl Problem {
     pub fn value_and_gradient(&self, x: &[f64], g: &mut [f64]) -> Result<f64, WrongLength> {
         self.check("point", x)?;
         self.check("gradient", g)?;
-        let mut sum = Squares::new(self.residual_count, Some(g));
-        (self.residuals)(x, &mut sum);
-        Ok(sum.value())
+        match &self.form {
+            Form::Residuals {
+                count, residuals, ..
+            } => {
+                let mut sum = Squares::new(*count, Some(g));
+                residuals(x, &mut sum);
+                Ok(sum.value())
+            }
+            Form::OnePass(formula) => Ok(formula.value_and_gradient(x, g)),
+        }
     }
 
     fn check(&self, what: &'static str, slice: &[f64]) -> Result<(), WrongLength> {
@@ -194,14 +235,41 @@ impl Problem {
         start: impl IntoIterator<Item = f64>,
     ) -> Self {
         Problem {
-            number,
+            number: Some(number),
             name,
             source,
-            residual_count,
-            residuals,
+            form: Form::Residuals {
+                count: residual_count,
+                residuals,
+                cost: Cost::Separate,
+            },
             start: start.into_iter().collect(),
             minima: Vec::new(),
         }
+    }
+
+    pub(super) fn one_pass(
+        name: &'static str,
+        source: &'static str,
+        formula: impl Formula,
+        start: impl IntoIterator<Item = f64>,
+    ) -> Self {
+        Problem {
+            number: None,
+            name,
+            source,
+            form: Form::OnePass(Arc::new(formula)),
+            start: start.into_iter().collect(),
+            minima: Vec::new(),
+        }
+    }
+
+    /// The same problem, whose value and gradient count as one evaluation.
+    pub(super) fn joint(mut self) -> Self {
+        if let Form::Residuals { cost, .. } = &mut self.form {
+            *cost = Cost::Joint;
+        }
+        self
     }
 
     pub(super) fn strict(self, value: f64, point: &[f64]) -> Self {
@@ -219,6 +287,10 @@ impl Problem {
         self.with(Minimum::Saddle { value, point })
     }
 
+    pub(super) fn described(self, value: f64, point: &'static str) -> Self {
+        self.with(Minimum::Described { value, point })
+    }
+
     pub(super) fn set(self, value: f64, points: &'static str) -> Self {
         self.with(Minimum::Set { value, points })
     }
@@ -233,12 +305,16 @@ impl Problem {
     }
 }
 
-/// A value costs less than a gradient here, hence [`Cost::Separate`].
+/// [`Cost::Separate`] for the problems of [`more_garbow_hillstrom`](fn@super::more_garbow_hillstrom), whose values cost less than
+/// their gradients; [`Cost::Joint`] for those of [`large`](super::large), where both come out of one pass.
 impl Objective<Vec<f64>> for Problem {
     type Error = WrongLength;
 
     fn cost(&self) -> Cost {
-        Cost::Separate
+        match self.form {
+            Form::Residuals { cost, .. } => cost,
+            Form::OnePass(_) => Cost::Joint,
+        }
     }
 
     fn value(&mut self, x: &Vec<f64>) -> Result<f64, WrongLength> {
@@ -263,9 +339,15 @@ mod tests {
     fn every_problem_adds_as_many_residuals_as_it_says() {
         for problem in more_garbow_hillstrom() {
             let mut g = std::vec![f64::NAN; problem.dim()];
-            let mut sum = Squares::new(problem.residual_count, Some(&mut g));
-            (problem.residuals)(&problem.start, &mut sum);
-            assert_eq!(sum.received(), problem.residual_count, "{}", problem.name);
+            let Form::Residuals {
+                count, residuals, ..
+            } = problem.form
+            else {
+                panic!("{} is a sum of squares", problem.name);
+            };
+            let mut sum = Squares::new(count, Some(&mut g));
+            residuals(&problem.start, &mut sum);
+            assert_eq!(sum.received(), count, "{}", problem.name);
             assert!(g.iter().all(|g| g.is_finite()), "{}", problem.name);
         }
     }
