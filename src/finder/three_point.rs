@@ -32,14 +32,16 @@ use crate::{Ray, Real, Side, Trial};
 /// 3. *Margins*: 0.1 of the bracket; on convex data no more than 0.3 of the way to the zero of the line through the
 ///    slopes, nor than the way to where the tangents at both ends meet, for a kink far to one side.
 /// 4. *A stalled end*: where the slope keeps more than 0.6 of its size, on convex data, something turns unseen. The
-///    next trials on that side go 0.7 of the way to where the tangents meet, or to the zero of the line through the two
-///    slopes of that side, whichever is nearer.
+///    next trial goes 0.7 of the way to where the tangents meet, or to the zero of the line through the two slopes of
+///    that side, whichever is nearer.
 /// 5. An end that is too long for want of decrease although it lies lower shows as much to the shapes through
 ///    `psi(a) = phi(a) - c1 a phi'(0)` (Moré & Thuente 1994, section 2).
 /// 6. *Never far behind bisection*: the first step that [`Bisection`](super::Bisection) would have tried and that the
 ///    bracket has not settled is tried, once bisection would have got there in less than half as many trials. So twice its
 ///    trials and four more suffice, where each verdict holds for all steps on its side and none lies outside of the
-///    domain.
+///    domain. Elsewhere bisection may chance upon a step that a longer leap has passed, and that then lies outside of
+///    the bracket: of 2 million rays of the reference family 3 took more, by 2 at most; of as many of further kinds 50, by
+///    8 at most, where the edge of a domain was to be found.
 ///
 /// All settings are measured: chosen on the 24 published runs of Moré & Thuente, on those functions with random
 /// parameters, and on random rays of 20 kinds; then confirmed on seeds and kinds that chose nothing. When any one of
@@ -71,8 +73,6 @@ pub struct ThreePoint<T = f64> {
     long: Option<Point<T>>,
     /// The end that was replaced last.
     third: Option<Point<T>>,
-    /// The end that has hardly moved, until the other one is replaced.
-    stalled: Option<Side>,
     /// The first step, where bisection would have begun.
     first: T,
     /// Trials so far.
@@ -114,7 +114,6 @@ impl<T: Real> ThreePoint<T> {
             },
             long: None,
             third: None,
-            stalled: None,
             first: zero,
             trials: 0,
         }
@@ -175,8 +174,8 @@ impl<T: Real> ThreePoint<T> {
         None
     }
 
-    /// Between the two ends of the bracket.
-    fn zoom(&self, ray: &Ray<T>, long: &Point<T>) -> T {
+    /// Between the two ends of the bracket, of which one may have `stalled`.
+    fn zoom(&self, ray: &Ray<T>, long: &Point<T>, stalled: Option<Side>) -> T {
         let short = &self.short;
         let (zero, half, one) = (T::zero(), T::of(0.5), T::one());
         let width = long.step - short.step;
@@ -206,7 +205,7 @@ impl<T: Real> ThreePoint<T> {
         let margin = T::of(MARGIN);
         let (mut low, mut high) = (margin, margin);
         if convex {
-            if let Some(side) = self.stalled {
+            if let Some(side) = stalled {
                 share = share + T::of(UNSEEN) * (self.unseen(&span, width, side) - share);
                 low = T::of(STALLED_MARGIN);
                 high = low;
@@ -300,14 +299,9 @@ impl<T: Real> StepFinder<T> for ThreePoint<T> {
             let kept = here.slope.abs() / end.slope.abs();
             kept > T::of(STALLED) && kept < T::one()
         });
-        if stalls {
-            self.stalled = Some(side);
-        } else if self.stalled != Some(side) {
-            self.stalled = None;
-        }
         Proposal::Try(match self.overdue() {
             Some(step) => step,
-            None => self.zoom(ray, &long),
+            None => self.zoom(ray, &long, stalls.then_some(side)),
         })
     }
 
