@@ -8,8 +8,8 @@ use surefoot::finder::{
     Backtracking, Bisection, BracketZoom, Expansion, GoldenSection, HagerZhang, MoreThuente,
 };
 use surefoot::{
-    BoxedDirection, BoxedFinder, BoxedRule, Descent, FirstTrial, Given, Limits, Reference, Report,
-    RunEnding, SettingError, Stopping, Want,
+    BoxedDirection, BoxedFinder, BoxedRule, Cost, Descent, FirstTrial, Given, Limits, Reference,
+    Report, RunEnding, SettingError, Stopping, Want,
 };
 
 type X = [f64; 3];
@@ -276,16 +276,314 @@ fn steps_of_their_own() {
     assert!(seen.last().unwrap().value < 0.1 * seen[0].value);
 }
 
+// ---- Hager and Zhang's quadratic step ----
+
+/// One search of a run of steepest descent: where it began, the probe before it, and the first trial.
+struct Probed {
+    begun: Begun,
+    probe: f64,
+    probed: f64,
+}
+
+/// The searches of a run, but the first, which has no probe.
+fn probed_searches(f: Function, x0: X, cost: Cost) -> Vec<Probed> {
+    let descent = Descent::new(SteepestDescent, Backtracking::<f64>::default(), armijo())
+        .with_first_trial(FirstTrial::HagerZhangQuadratic)
+        .unwrap()
+        .with_cost(cost)
+        .with_stopping(Stopping {
+            gradient: Some(1e-5),
+            iterations: 40,
+            ..Stopping::default()
+        })
+        .unwrap();
+    let mut run = descent.start(x0);
+    let mut seen: Vec<Probed> = Vec::new();
+    let (mut known, mut asked) = (0, 0_u64);
+    while let Some(request) = run.request() {
+        let (want, point, ceiling) = (request.want, *request.point, request.ceiling);
+        let (value, gradient) = f(&point);
+        *request.gradient = gradient;
+        asked += 1;
+        if let Some(&g) = run.gradient() {
+            let x = *run.point();
+            let step = -dot(&minus(&point, &x), &g) / dot(&g, &g);
+            if run.iterations() > known {
+                known = run.iterations();
+                let begun = Begun {
+                    x,
+                    value: run.value(),
+                    g,
+                    first: f64::NAN,
+                };
+                seen.push(Probed {
+                    begun,
+                    probe: step,
+                    probed: value,
+                });
+                let alone = match cost {
+                    Cost::Separate => Want::Value,
+                    Cost::Joint => Want::Both,
+                };
+                assert_eq!((want, ceiling), (alone, Some(run.value())));
+            } else if let Some(last) = seen.last_mut()
+                && last.begun.first.is_nan()
+            {
+                last.begun.first = step;
+            }
+        }
+        let given = match want {
+            Want::Value => Given::Value(value),
+            Want::Gradient => Given::Gradient,
+            Want::Both => Given::Both(value),
+        };
+        run.supply(given).unwrap();
+    }
+    // The probe is counted like any other evaluation.
+    assert_eq!(run.finish().1.evaluations.calls(), asked);
+    seen
+}
+
+/// W. W. Hager & H. Zhang, SIAM J. Optim. 16 (2005) 170-192, section 4, steps I1 and I2, from the search before and the probe;
+/// and whether it was I1.
+fn initial_guess(before: &Begun, now: &Probed) -> (f64, bool) {
+    let (fall, a) = (dot(&now.begun.g, &now.begun.g), now.probe);
+    // q(t) = value - fall t + c t^2
+    let c = ((now.probed - now.begun.value) / a + fall) / a;
+    if now.probed <= now.begun.value && c > 0.0 {
+        (fall / (2.0 * c), true)
+    } else {
+        (2.0 * step(before, &now.begun), false)
+    }
+}
+
+#[test]
+fn quadratic_steps_follow_their_formula() {
+    let (mut by_parabola, mut doubled) = (0, 0);
+    for cost in [Cost::Separate, Cost::Joint] {
+        for (f, x0) in [
+            (bowl as Function, START),
+            (hill, [0.01, -0.02, 0.015]),
+            (canyon, [0.5, 0.001, 0.0]),
+        ] {
+            let seen = probed_searches(f, x0, cost);
+            assert!(seen.len() >= 6, "only {} searches", seen.len());
+            for (k, pair) in seen.windows(2).enumerate() {
+                let (before, now) = (&pair[0].begun, &pair[1]);
+                close(now.probe, 0.1 * step(before, &now.begun), "a tenth");
+                let (wanted, parabola) = initial_guess(before, now);
+                // The formula subtracts values; near the minimum nothing is left of the difference.
+                let sure = (now.probed - now.begun.value).abs() > 1e-8 * now.begun.value.abs();
+                if sure {
+                    close(now.begun.first, wanted, &format!("search {}", k + 3));
+                    by_parabola += u32::from(parabola);
+                    doubled += u32::from(!parabola);
+                }
+            }
+        }
+    }
+    assert!(by_parabola >= 20, "I1 was used {by_parabola} times");
+    assert!(doubled >= 6, "I2 was used {doubled} times");
+}
+
+/// `-x + y^2` with growing curvature: after long steps, shorter ones.
+fn canyon(x: &X) -> (f64, X) {
+    let rise = x[0].powi(2);
+    let width = 1.0 + 1e3 * rise;
+    let value = 0.05 * x[0].powi(4) - x[0] + width * x[1] * x[1] + x[2] * x[2];
+    let along = 0.2 * x[0].powi(3) - 1.0 + 2e3 * x[0] * x[1] * x[1];
+    (value, [along, 2.0 * width * x[1], 2.0 * x[2]])
+}
+
+#[test]
+fn a_parabola_gives_its_minimizer_as_first_trial() {
+    // Curvatures 1, 5 and 30: along -g the minimizer is g.g / g.Hg, exactly.
+    let parabola = |x: &X| {
+        let hx = [x[0], 5.0 * x[1], 30.0 * x[2]];
+        (0.5 * dot(x, &hx), hx)
+    };
+    let mut minimizers = 0;
+    for probed in probed_searches(parabola, START, Cost::Separate) {
+        let g = probed.begun.g;
+        let hg = [g[0], 5.0 * g[1], 30.0 * g[2]];
+        if probed.probed <= probed.begun.value && probed.begun.first.is_finite() {
+            let wanted = dot(&g, &g) / dot(&g, &hg);
+            close(probed.begun.first, wanted, "the minimizer");
+            minimizers += 1;
+        }
+    }
+    assert!(minimizers >= 10, "{minimizers} minimizers");
+}
+
+/// A run along one axis that has moved from 0 to 1, where the value is -1 and the slope along `d = 2` is -4, and whose probe
+/// at a step of 0.1 was answered; with the step that it tries next.
+fn after_probe(
+    answer: Given<f64>,
+    limits: Limits<f64>,
+    calls: u64,
+) -> (Option<f64>, Report<[f64; 1]>) {
+    let descent = Descent::new(SteepestDescent, Backtracking::<f64>::default(), armijo())
+        .with_first_trial(FirstTrial::HagerZhangQuadratic)
+        .unwrap()
+        .with_limits(limits)
+        .with_stopping(Stopping {
+            gradient: Some(0.0),
+            evaluations: calls,
+            ..Stopping::default()
+        })
+        .unwrap();
+    let mut run = descent.start([0.0]);
+    let mut give = |given: Given<f64>, slope: f64, at: f64| {
+        let request = run.request().expect("something is wanted");
+        assert!(
+            (request.point[0] - at).abs() < 1e-14,
+            "at {}",
+            request.point[0]
+        );
+        request.gradient[0] = slope;
+        run.supply(given).unwrap();
+    };
+    // The opening at the origin, where the value is 0 too, is 1.
+    give(Given::Both(0.0), -1.0, 0.0);
+    give(Given::Value(-1.0), 0.0, 1.0);
+    give(Given::Gradient, -2.0, 1.0);
+    let probe = 0.1_f64.clamp(limits.lower(), limits.upper());
+    give(answer, 0.0, 1.0 + 2.0 * probe);
+    let next = run.request().map(|request| (request.point[0] - 1.0) / 2.0);
+    (next, run.finish().1)
+}
+
+#[test]
+fn where_no_parabola_opens_upward_the_last_step_is_doubled() {
+    let next = |answer| after_probe(answer, Limits::default(), 1000).0.unwrap();
+    // -1 - 4 t + c t^2 at t = 0.1, with its minimizer 2 / c.
+    for c in [0.25, 1.0, 10.0, 39.0, 40.0 - 1e-9] {
+        let value = -1.0 - 4.0 * 0.1 + c * 0.01;
+        close(next(Given::Value(value)), 2.0 / c, "the minimizer");
+        close(next(Given::Both(value)), 2.0 / c, "more than was wanted");
+    }
+    // Not above is enough.
+    close(next(Given::Value(-1.0)), 0.05, "a level probe");
+    for (answer, what) in [
+        (Given::Value(-1.0 - 0.4 - 0.01), "concave"),
+        (Given::Value(-1.0 + 1e-9), "above the start"),
+        (Given::Value(f64::NAN), "NaN"),
+        (Given::Value(f64::INFINITY), "infinite"),
+        (Given::Value(f64::NEG_INFINITY), "infinite below"),
+        (Given::OutsideDomain, "outside"),
+    ] {
+        close(next(answer), 2.0, what);
+    }
+}
+
+#[test]
+fn a_probe_is_counted_and_keeps_to_the_bounds() {
+    for answer in [Given::Value(-1.3), Given::Value(0.0), Given::OutsideDomain] {
+        let (_, report) = after_probe(answer, Limits::default(), 1000);
+        let evaluations = report.evaluations;
+        // Start; first trial; its gradient; probe.
+        assert_eq!(
+            (evaluations.both, evaluations.values, evaluations.gradients),
+            (1, 2, 1)
+        );
+        assert_eq!(report.refusals, Default::default(), "no trial was refused");
+        // The budget ends there.
+        let (next, report) = after_probe(answer, Limits::default(), 4);
+        assert_eq!((next, report.ending), (None, RunEnding::EvaluationsSpent));
+    }
+    // `after_probe` looks where the probe is. -1 - 4 t + 2 t^2 at 0.25:
+    let limits = Limits::new(0.25, f64::INFINITY, 50).unwrap();
+    let (next, _) = after_probe(Given::Value(-1.875), limits, 1000);
+    close(next.unwrap(), 1.0, "a probe on the lower bound");
+    // -1 - 4 t exactly: a straight line has no minimizer.
+    let (next, _) = after_probe(Given::Value(-2.0), limits, 1000);
+    close(next.unwrap(), 2.0, "a straight line");
+}
+
+#[test]
+fn a_probe_beyond_all_numbers_is_left_out() {
+    let mut run = Descent::new(SteepestDescent, Backtracking::<f64>::default(), armijo())
+        .with_first_trial(FirstTrial::HagerZhangQuadratic)
+        .unwrap()
+        .start([1.7e308]);
+    // A move by a step of 1.7e306 along 1; a tenth of that along 1e4 is beyond the largest number.
+    for (given, slope) in [
+        (Given::Both(0.0), -1.0),
+        (Given::Value(-1e305), 0.0),
+        (Given::Gradient, -1e4),
+    ] {
+        let request = run.request().unwrap();
+        request.gradient[0] = slope;
+        run.supply(given).unwrap();
+    }
+    assert_eq!((run.iterations(), run.refusals().outside), (1, 0));
+    // So is the first trial, twice the last step, but that is a trial, and refused.
+    assert!(run.request().unwrap().point[0].is_finite());
+    assert!(run.refusals().outside > 0);
+}
+
+#[test]
+fn a_probe_lower_than_all_else_is_kept() {
+    // The run ends at the probe, or right after.
+    for calls in [4, 1000] {
+        let (_, report) = after_probe(Given::Value(-1.37), Limits::default(), calls);
+        assert_eq!(report.value, -1.37);
+        assert!((report.point[0] - 1.2).abs() < 1e-14);
+    }
+    for unfit in [-0.5, f64::NAN, f64::NEG_INFINITY] {
+        let (_, report) = after_probe(Given::Value(unfit), Limits::default(), 4);
+        assert_eq!((report.value, report.point), (-1.0, [1.0]));
+    }
+    // A search that finds nothing lower gives way to it; where the rule accepts a trial, that is where the run moves.
+    let report = with_other_values(1.0);
+    assert_eq!(
+        (report.ending, report.value),
+        (RunEnding::IterationsSpent, -1.37)
+    );
+    assert_eq!(report.remedies.best_taken, 1);
+    let report = with_other_values(-1.25);
+    assert_eq!(report.value, -1.25);
+    close(report.point[0], 1.0 + 4.0 / 3.0, "the first trial");
+}
+
+/// A run of two moves where the value is 0 at 0, -1 at 1, -1.37 at the probe, 1.2, and `other` elsewhere.
+fn with_other_values(other: f64) -> Report<[f64; 1]> {
+    let steps = |x: &[f64; 1], g: &mut [f64; 1]| {
+        let (value, slope) = match x[0] {
+            0.0 => (0.0, -1.0),
+            1.0 => (-1.0, -2.0),
+            x if (x - 1.2).abs() < 1e-14 => (-1.37, -4.0),
+            _ => (other, -1.0),
+        };
+        g[0] = slope;
+        value
+    };
+    Descent::new(SteepestDescent, Backtracking::<f64>::default(), armijo())
+        .with_first_trial(FirstTrial::HagerZhangQuadratic)
+        .unwrap()
+        .with_limits(Limits::new(0.0, f64::INFINITY, 10).unwrap())
+        .with_stopping(Stopping {
+            iterations: 2,
+            ..Stopping::default()
+        })
+        .unwrap()
+        .minimize_fn([0.0], steps)
+        .unwrap()
+}
+
 // ---- The cap on a move ----
 
 fn capped(
     finder: BoxedFinder<f64>,
     direction: BoxedDirection<X>,
     rule: BoxedRule<f64>,
+    first: FirstTrial,
     cap: f64,
     limits: Limits<f64>,
 ) -> (Report<X>, u64) {
     let descent = Descent::new(direction, finder, rule)
+        .with_first_trial(first)
+        .unwrap()
         .with_longest_move(cap)
         .unwrap()
         .with_limits(limits)
@@ -353,7 +651,11 @@ fn no_trial_is_longer_than_the_cap() {
                     0 => Box::new(WeakWolfe::default()),
                     _ => Box::new(StrongWolfe::new(1e-4, 0.1).unwrap()),
                 };
-                let (report, full) = capped(finder, direction, rule, cap, Limits::default());
+                let first = match number {
+                    0 | 3 => FirstTrial::HagerZhangQuadratic,
+                    _ => FirstTrial::default(),
+                };
+                let (report, full) = capped(finder, direction, rule, first, cap, Limits::default());
                 let what = format!("cap {cap}, finder {number}, direction {way}");
                 assert!(report.converged(), "{what}: {}", report.ending);
                 // From 3 away, short moves are needed, and many.
@@ -376,6 +678,7 @@ fn the_tighter_of_cap_and_bound_holds() {
         Box::new(Bisection::new()),
         Box::new(SteepestDescent),
         armijo(),
+        FirstTrial::default(),
         0.5,
         limits,
     );

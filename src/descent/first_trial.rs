@@ -12,8 +12,13 @@ use num_traits::Float;
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 #[non_exhaustive]
 pub enum FirstTrial {
-    /// 1 where the direction says that it is natural ([`Direction::unit_step`](crate::Direction::unit_step)),
+    /// About 1 where the direction says that it is natural ([`Direction::unit_step`](crate::Direction::unit_step)),
     /// [`LastDecrease`](FirstTrial::LastDecrease) otherwise. The default.
+    ///
+    /// Limited-memory directions tend to be too short, or too long, for a whole run. So 1 is corrected by the root of a running geometric
+    /// mean of the steps at which the slope of the last searches would have vanished, had it been linear: `a slope_0 / (slope_0 -
+    /// slope_a)` at the accepted step `a`, the newest with the weight 1/8, each kept within [1/16, 16] and the correction within [1/4, 4]. A
+    /// reset of the direction forgets it. Weight and root are from a measurement (`examples/limited_memory_costs.rs`: 10 % fewer evaluations).
     #[default]
     ByDirection,
     /// Always 1.
@@ -30,9 +35,20 @@ pub enum FirstTrial {
     BarzilaiBorweinLong,
     /// Barzilai and Borwein's short step `s.y / y.y` (eq. 6 there), with the same safeguard.
     BarzilaiBorweinShort,
-    /// Twice the last step: step I2 of Hager & Zhang (2006) with `psi_2 = 2`; the opening is theirs too (I0). Their
-    /// optional quadratic step (I1) costs an evaluation that no rule judges, and is left out.
+    /// Twice the last step: step I2 of Hager & Zhang (2006) with `psi_2 = 2`; the opening is theirs too (I0). With their
+    /// quadratic step (I1), which costs an evaluation: [`HagerZhangQuadratic`](FirstTrial::HagerZhangQuadratic).
     HagerZhang,
+    /// The initial guess of Hager & Zhang with its quadratic step (SIAM J. Optim. 16 (2005) 170-192,
+    /// doi:10.1137/030601880, section 4, steps I0 to I2 with `psi_0 = 0.01`, `psi_1 = 0.1`, `psi_2 = 2`).
+    ///
+    /// Each search but the first is preceded by a probe: the value at a tenth of the last step. Where it is not above the value
+    /// at the start, and the parabola through both with the slope at the start opens upward, the first trial is the
+    /// minimizer of that parabola (I1). Otherwise, also where the probe lies outside of the domain, it is twice the last
+    /// step (I2).
+    ///
+    /// The probe is counted as an evaluation. It is no trial: no rule judges it, and it stands in no log. It keeps to the
+    /// bounds of the search, so that bounds may move it from a tenth of the last step.
+    HagerZhangQuadratic,
     /// `first / (k + 1)` for the move number `k` from 0: steps that diminish but whose sum does not, as subgradient and
     /// stochastic methods want them. `first` is positive and finite.
     Diminishing {
@@ -52,6 +68,31 @@ pub(super) struct LastMove<T> {
     /// `f_last - f`.
     pub(super) decrease: T,
     pub(super) products: Option<Products<T>>,
+}
+
+/// The running mean of the steps at which slopes would have vanished, where 1 is the natural step.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Stride<T>(T);
+
+impl<T: Real> Stride<T> {
+    pub(super) fn new() -> Self {
+        Stride(T::of(1.0))
+    }
+
+    /// Learns from a search that accepted `step`, with these slopes at its start and there.
+    pub(super) fn accepted(&mut self, step: T, (slope, there): (T, T)) {
+        let vanishes = step * (slope / (slope - there));
+        if there > slope && vanishes.is_finite() {
+            let vanishes = vanishes.max(T::of(0.0625)).min(T::of(16.0));
+            let ratio = vanishes / self.0;
+            self.0 = self.0 * ratio.sqrt().sqrt().sqrt();
+        }
+    }
+
+    /// The natural first trial.
+    pub(super) fn first(&self) -> T {
+        self.0.sqrt().max(T::of(0.25)).min(T::of(4.0))
+    }
 }
 
 /// Ratios of inner products of the move `s = a d` and the change of the gradient `y`, where a first trial wants them.
@@ -91,10 +132,18 @@ impl FirstTrial {
         )
     }
 
+    /// The step to probe before a search, where a probe is wanted: `psi_1` times the last one.
+    pub(super) fn probe<T: Real>(&self, last: Option<LastMove<T>>) -> Option<T> {
+        match self {
+            FirstTrial::HagerZhangQuadratic => last.map(|l| T::of(0.1) * l.step),
+            _ => None,
+        }
+    }
+
     /// The first step along a ray with this `slope`; positive and finite.
     pub(super) fn step<V: Vector>(
         &self,
-        unit_step: bool,
+        natural: Option<V::Scalar>,
         slope: V::Scalar,
         move_number: u64,
         last: Option<LastMove<V::Scalar>>,
@@ -110,8 +159,8 @@ impl FirstTrial {
         let chosen = match *self {
             FirstTrial::Unit => Some(one),
             FirstTrial::Fixed(step) => usable(V::Scalar::of(step)),
-            FirstTrial::ByDirection if unit_step => Some(one),
-            FirstTrial::ByDirection | FirstTrial::LastDecrease => last.and_then(by_decrease),
+            FirstTrial::ByDirection => natural.or_else(|| last.and_then(by_decrease)),
+            FirstTrial::LastDecrease => last.and_then(by_decrease),
             FirstTrial::BarzilaiBorweinLong => last.and_then(|l| {
                 let ratio = l.products.and_then(|p| usable(p.long));
                 ratio.or_else(|| by_decrease(l))
@@ -120,7 +169,9 @@ impl FirstTrial {
                 let ratio = l.products.and_then(|p| usable(p.short));
                 ratio.or_else(|| by_decrease(l))
             }),
-            FirstTrial::HagerZhang => last.and_then(|l| usable(V::Scalar::of(2.0) * l.step)),
+            FirstTrial::HagerZhang | FirstTrial::HagerZhangQuadratic => {
+                last.and_then(|l| usable(V::Scalar::of(2.0) * l.step))
+            }
             FirstTrial::Diminishing { first } => {
                 usable(V::Scalar::of(first / (move_number as f64 + 1.0)))
             }
@@ -128,6 +179,17 @@ impl FirstTrial {
         };
         chosen.or_else(|| usable(opening())).unwrap_or(one)
     }
+}
+
+/// The minimizer of the parabola through the value and slope at 0 and the value at `probe`, which is not above the one at
+/// 0; `None` where there is none.
+pub(super) fn quadratic_step<T: Real>(value: T, slope: T, probe: T, probed: T) -> Option<T> {
+    let rise = probed - value;
+    // Half the second derivative, times the square of `probe`.
+    let bend = rise - slope * probe;
+    // Not above 0, or infinite, where the parabola does not open upward.
+    let minimizer = probe * (-slope * probe / (bend + bend));
+    (rise <= T::zero() && minimizer > T::zero() && minimizer.is_finite()).then_some(minimizer)
 }
 
 /// The opening step (see [`FirstTrial`]).

@@ -118,6 +118,11 @@ impl Stopping {
         }
     }
 
+    /// Whether [`after_move`](Stopping::after_move) will ask how long a move was.
+    pub(super) fn looks_at_lengths(&self) -> bool {
+        self.step_change > 0.0
+    }
+
     /// The tests on a move; `lengths` gives `a max|d|` and `max|x|` where they are needed.
     pub(super) fn after_move<T: Real>(
         &self,

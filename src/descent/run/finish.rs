@@ -17,10 +17,10 @@ where
         self.stop();
         let ending = self.ending().unwrap_or(RunEnding::Stopped);
         // A trial of a search that did not end in a move may be lower than the last point moved to.
+        let best = self.search.best().filter(|_| self.search_is_from_here);
         let lower = self
-            .search
-            .best()
-            .filter(|best| self.search_is_from_here && best.value < self.value);
+            .lower_with_probe(best)
+            .filter(|best| best.value < self.value);
         // A converged point stands unless an earlier one is lower by more than rounding.
         let rounding = match ending {
             RunEnding::Converged(_) => self.rounding_of_value(),

@@ -2,17 +2,19 @@
 
 mod exchange;
 mod finish;
+mod probe;
 mod remedy;
 
 pub use exchange::{Given, Request, RunReply, Want};
 
-use super::first_trial::{LastMove, Products, opening};
+use super::first_trial::{LastMove, Products, Stride, opening};
 use super::reference::{Reference, ReferenceMemory};
 use super::report::{Fault, Refusals, Remedies, RunEnding};
 use super::rounding::{RoundingWatch, WithRescue};
 use super::{Descent, FirstTrial, Stopping};
 use crate::direction::Moved;
 use crate::search::{Entry, Fate, Log};
+use crate::vector::Survey;
 use crate::{
     Acceptance, Condition, Cost, Direction, Ending, Evaluations, Need, Ray, Real, Sample, Side,
     StepFinder, StepSearch, Trial, Vector,
@@ -72,8 +74,13 @@ pub struct Run<V: Vector, D, F, A> {
     /// The point asked about, the step it stands for, and its gradient.
     trial: V,
     trial_gradient: V,
+    /// What the direction told about that gradient.
+    survey: Survey<V::Scalar>,
     phase: Phase<V::Scalar>,
     last: Option<LastMove<V::Scalar>>,
+    stride: Stride<V::Scalar>,
+    /// What was probed along `d` before the search, where it is lower than here.
+    probed: Option<Trial<V::Scalar>>,
     /// Whether the direction in use is that of a reset: no memory is left to give up.
     fresh: bool,
     /// Whether the search's steps are measured from `x` along `d` as they are now.
@@ -112,6 +119,11 @@ enum Phase<T> {
     },
     /// A search is over and the next not begun: the log of the last one can be read until the next request.
     Between(Next<T>),
+    /// The value at `step` is wanted for a better first step of the next search than this one.
+    Probing {
+        step: T,
+        first: T,
+    },
     /// A search is under way, and `trial` is at its step.
     Searching,
     /// The run moves to a trial that is not the latest one: the gradient there is wanted.
@@ -164,9 +176,12 @@ where
             slope: V::Scalar::nan(),
             trial: x0.clone(),
             trial_gradient: x0.clone(),
+            survey: Survey::unknown(),
             x: x0,
             phase: Phase::Start { value: None },
             last: None,
+            stride: Stride::new(),
+            probed: None,
             fresh: true,
             search_is_from_here: false,
             troubles: 0,
@@ -205,6 +220,7 @@ where
             want,
             ceiling: match self.phase {
                 Phase::Searching => self.search.ceiling(),
+                Phase::Probing { .. } => Some(self.value),
                 _ => None,
             },
             point: &self.trial,
@@ -222,6 +238,10 @@ where
                 Need::Both => Want::Both,
             }),
             Phase::GoingBack { want, .. } => Some(want),
+            Phase::Probing { .. } => Some(match self.settings.cost {
+                Cost::Separate => Want::Value,
+                Cost::Joint => Want::Both,
+            }),
             Phase::Between(_) | Phase::Ended(_) => None,
         }
     }
@@ -249,6 +269,7 @@ where
         }
         match self.phase {
             Phase::Start { value } => self.start_with(value, given),
+            Phase::Probing { step, first } => self.search_after(step, first, given),
             Phase::Searching => self.search_with(given),
             Phase::GoingBack {
                 trial,
@@ -263,7 +284,7 @@ where
                         want: Want::Gradient,
                     };
                 }
-                Given::Gradient | Given::Both(_) if self.trial_gradient.max_abs().is_finite() => {
+                Given::Gradient | Given::Both(_) if self.surveyed().max_abs.is_finite() => {
                     self.remedies.best_taken += u64::from(after_failure);
                     self.troubles = if after_failure { self.troubles } else { 0 };
                     self.move_to(trial, after_failure);
@@ -471,7 +492,7 @@ where
         let (x, g, value) = (&self.x, &self.g, self.value);
         let gradient_max = self.gradient_max.unwrap_or_else(V::Scalar::nan);
         let first = self.settings.first_trial.step::<V>(
-            self.direction.unit_step(),
+            self.direction.unit_step().then(|| self.stride.first()),
             self.slope,
             self.iterations,
             self.last,
@@ -482,7 +503,10 @@ where
             .and_then(remedy::closed_in)
             .map(|a| a * (old_slope / self.slope))
             .filter(|a| *a > V::Scalar::of(0.0) && a.is_finite());
-        self.begin_search(closed_in.unwrap_or(first));
+        match closed_in {
+            Some(step) => self.begin_search(step),
+            None => self.probe(first),
+        }
     }
 
     fn begin_search(&mut self, first: V::Scalar) {
@@ -498,10 +522,8 @@ where
             None if self.search.rule().rule().reads_slack() => self.rounding.slack(),
             None => None,
         };
-        if let Some(longest) = self.settings.longest_move {
-            let limits = self.settings.limits.cast::<V::Scalar>();
-            let most = V::Scalar::of(longest) / self.d.max_abs();
-            self.search.set_limits(limits.at_most(most));
+        if self.settings.longest_move.is_some() {
+            self.search.set_limits(self.limits());
         }
         if self.search.begin(ray, first).is_err() {
             return self.end(RunEnding::NotDescent { slope: self.slope });
@@ -509,6 +531,15 @@ where
         self.search_is_from_here = true;
         self.phase = Phase::Searching;
         self.next_trial();
+    }
+
+    /// The limits of a search along `d`.
+    fn limits(&self) -> crate::Limits<V::Scalar> {
+        let limits = self.settings.limits.cast::<V::Scalar>();
+        match self.settings.longest_move {
+            Some(longest) => limits.at_most(V::Scalar::of(longest) / self.d.max_abs()),
+            None => limits,
+        }
     }
 
     fn point_downhill(&mut self) -> V::Scalar {
@@ -522,6 +553,7 @@ where
 
     fn reset_direction(&mut self) {
         self.direction.reset();
+        self.stride = Stride::new();
         self.remedies.resets += 1;
         self.fresh = true;
     }
@@ -532,8 +564,7 @@ where
             if ask.need == Need::Slope {
                 return;
             }
-            self.trial.step_from(&self.x, ask.step, &self.d);
-            if self.trial.max_abs().is_finite() {
+            if self.trial.finite_step_from(&self.x, ask.step, &self.d) {
                 return;
             }
             // `x + a d` overflows: such a point is never asked about.
@@ -544,11 +575,19 @@ where
         self.searched();
     }
 
+    /// What the direction tells about the gradient at the trial.
+    fn surveyed(&mut self) -> &Survey<V::Scalar> {
+        self.survey = self
+            .direction
+            .survey(&self.trial_gradient, &self.g, &self.d);
+        &self.survey
+    }
+
     fn search_with(&mut self, given: Given<V::Scalar>) {
         let sample = match given {
             Given::Value(value) => Sample::Value(value),
-            Given::Gradient => Sample::Slope(self.trial_gradient.dot(&self.d)),
-            Given::Both(value) => Sample::Both(value, self.trial_gradient.dot(&self.d)),
+            Given::Gradient => Sample::Slope(self.surveyed().slope),
+            Given::Both(value) => Sample::Both(value, self.surveyed().slope),
             Given::NoGradient => Sample::NoSlope,
             Given::OutsideDomain => Sample::OutsideDomain,
         };
@@ -597,28 +636,38 @@ where
                         self.go_back_to(trial, false);
                     }
                 }
-                (ending, best) => self.remedy(ending, best),
+                (ending, best) => self.remedy(ending, self.lower_with_probe(best)),
             },
         }
     }
 
     /// Moves to the trial, whose point and gradient stand in the buffers.
     fn move_to(&mut self, trial: Trial<V::Scalar>, after_failure: bool) {
-        let gradient_max = self.trial_gradient.max_abs();
+        let gradient_max = self.survey.max_abs;
+        let moved = match self.settings.stopping.looks_at_lengths() {
+            true => trial.step * self.d.max_abs(),
+            false => V::Scalar::nan(),
+        };
         self.fresh = false;
         self.search_is_from_here = false;
+        self.probed = None;
         let products = self
             .settings
             .first_trial
             .wants_products()
             .then(|| Products::of(trial.step, &self.d, &self.g, &self.trial_gradient));
+        if self.direction.unit_step() {
+            let slopes = (self.slope, self.survey.slope);
+            self.stride.accepted(trial.step, slopes);
+        }
         self.direction.moved(Moved {
             step: trial.step,
-            direction: &self.d,
+            direction: &mut self.d,
             x_old: &self.x,
             x_new: &self.trial,
             g_old: &mut self.g,
             g_new: &self.trial_gradient,
+            survey: self.survey,
         });
         core::mem::swap(&mut self.x, &mut self.trial);
         core::mem::swap(&mut self.g, &mut self.trial_gradient);
@@ -634,13 +683,10 @@ where
         self.reference.accepted(self.value);
         self.rounding.moved(old_value, self.value);
         self.note_progress(gradient_max);
-        let (x, d) = (&self.x, &self.d);
-        let stopping = &self.settings.stopping;
-        let criterion = stopping.at_point(self.value, gradient_max).or_else(|| {
-            stopping.after_move(old_value, self.value, || {
-                (trial.step * d.max_abs(), x.max_abs())
-            })
-        });
+        let (x, stopping) = (&self.x, &self.settings.stopping);
+        let criterion = stopping
+            .at_point(self.value, gradient_max)
+            .or_else(|| stopping.after_move(old_value, self.value, || (moved, x.max_abs())));
         if let Some(criterion) = criterion {
             return self.end(RunEnding::Converged(criterion));
         }
