@@ -73,10 +73,14 @@ pub mod acceptance;
 pub mod audit;
 pub mod descent;
 pub mod direction;
+#[cfg(feature = "experiment")]
+pub mod experiment;
 pub mod finder;
 pub mod guide;
 mod line;
 mod objective;
+#[cfg(feature = "plot")]
+pub mod plot;
 #[cfg(feature = "problems")]
 pub mod problems;
 mod real;

@@ -1,5 +1,6 @@
 //! [`Real`]: the two floating-point types that a search can run in.
 
+use crate::vector::kernels::lanes::{Kernel, Portable};
 use core::fmt::{Debug, Display, LowerExp};
 use num_traits::Float;
 
@@ -13,6 +14,31 @@ pub trait Real: Float + Debug + Display + LowerExp + Default + Send + Sync + 'st
     fn of(x: f64) -> Self;
     /// The same number in double precision, without loss.
     fn to_double(self) -> f64;
+
+    /// Runs a slice kernel with the widest instructions that the processor has for this type; the bits are the same.
+    #[doc(hidden)]
+    #[inline]
+    fn run<K: Kernel<Self>>(kernel: K) -> K::Output {
+        kernel.run(Portable)
+    }
+}
+
+/// Kernels of this type run with AVX2 where the processor has it.
+#[cfg(all(feature = "simd", target_arch = "x86_64"))]
+macro_rules! run_wide {
+    () => {
+        #[inline]
+        fn run<K: Kernel<Self>>(kernel: K) -> K::Output {
+            match crate::vector::kernels::avx2::run(kernel) {
+                Ok(output) => output,
+                Err(kernel) => kernel.run(Portable),
+            }
+        }
+    };
+}
+#[cfg(not(all(feature = "simd", target_arch = "x86_64")))]
+macro_rules! run_wide {
+    () => {};
 }
 
 impl Real for f32 {
@@ -23,6 +49,7 @@ impl Real for f32 {
     fn to_double(self) -> f64 {
         f64::from(self)
     }
+    run_wide!();
 }
 
 impl Real for f64 {
@@ -33,4 +60,5 @@ impl Real for f64 {
     fn to_double(self) -> f64 {
         self
     }
+    run_wide!();
 }

@@ -3,7 +3,7 @@
 
 use allocation_counter::measure;
 use surefoot::acceptance::{Goldstein, StrongWolfe, SufficientDecrease, WeakWolfe};
-use surefoot::direction::{ConjugateGradient, Lbfgs, SteepestDescent, Update};
+use surefoot::direction::{ConjugateGradient, Form, Lbfgs, SinglePairs, SteepestDescent, Update};
 use surefoot::finder::{
     Backtracking, Bisection, BracketZoom, InterpolatingBacktracking, MoreThuente,
 };
@@ -194,6 +194,54 @@ fn a_run_that_ends_in_rounding_allocates_nothing() {
 }
 
 // ---- What is served ----
+
+/// Memory that a run holds, in vectors of its own length.
+fn vectors_held(direction: impl Direction<Vec<f64>>) -> f64 {
+    const LONG: usize = 200_000;
+    let descent = Descent::new(direction, MoreThuente::new(), WeakWolfe::default());
+    let start = vec![1.0; LONG];
+    let counted = measure(|| {
+        let mut run = descent.start(start);
+        for _ in 0..60 {
+            let Some(request) = run.request() else { break };
+            for (i, (g, x)) in request.gradient.iter_mut().zip(request.point).enumerate() {
+                *g = x * (1.0 + (i % 50) as f64);
+            }
+            let value = 0.5 * request.gradient.dot(request.point);
+            run.supply(Given::Both(value)).unwrap();
+        }
+        assert!(run.iterations() > 20);
+    });
+    // The start itself was allocated before.
+    1.0 + counted.bytes_max as f64 / (8 * LONG) as f64
+}
+
+#[test]
+fn a_run_holds_no_more_vectors_than_it_says() {
+    // The few small buffers of a run are far below a hundredth of a vector here.
+    let at_most = |name: &str, held: f64, vectors: usize| {
+        assert!(held <= vectors as f64 + 0.01, "{name} holds {held} vectors");
+        assert!(
+            held > vectors as f64 - 1.5,
+            "{name} holds {held}: is anything counted?"
+        );
+    };
+    at_most("steepest descent", vectors_held(SteepestDescent), 5);
+    for update in [Update::PolakRibierePlus, Update::HagerZhang] {
+        let held = vectors_held(ConjugateGradient::new(update));
+        at_most("conjugate gradients", held, 6);
+    }
+    for pairs in [1, 3, 10] {
+        for form in [Form::Compact, Form::TwoLoop] {
+            let lbfgs = Lbfgs::new(pairs).unwrap().with_form(form);
+            at_most("L-BFGS", vectors_held(lbfgs), 2 * pairs + 6);
+        }
+        let single = Lbfgs::new(pairs)
+            .unwrap()
+            .with_history(SinglePairs::default());
+        at_most("L-BFGS, single precision", vectors_held(single), pairs + 6);
+    }
+}
 
 fn none(name: &str, allocations: u64) {
     assert_eq!(allocations, 0, "{name}");

@@ -6,7 +6,9 @@ use std::convert::Infallible;
 use std::fmt::Debug;
 use std::ops::ControlFlow;
 use surefoot::acceptance::{Goldstein, StrongWolfe, SufficientDecrease, WeakWolfe};
-use surefoot::direction::{ConjugateGradient, Lbfgs, Moved, SteepestDescent, Update};
+use surefoot::direction::{
+    ConjugateGradient, Form, InitialScale, Lbfgs, Moved, SteepestDescent, Update,
+};
 use surefoot::finder::{
     Backtracking, Bisection, BracketZoom, InterpolatingBacktracking, MoreThuente,
 };
@@ -156,60 +158,56 @@ fn steepest_descent_with_exact_steps_contracts_as_kantorovich_says() {
 // ---- L-BFGS ----
 
 #[test]
-fn the_two_loop_direction_is_that_of_the_dense_bfgs_matrix() {
+fn the_direction_is_that_of_the_dense_bfgs_matrix_in_both_forms() {
     // Nocedal & Wright 2006, eq. 7.16 to 7.20: H is built by the BFGS formula, eq. 6.17, from (s.y / y.y) I.
     let mut random = Random(11);
-    for n in [1, 2, 3, 7, 16, 30] {
+    for n in [1, 2, 3, 7, 16, 30, 50] {
         for memory in [1, 2, 5, 20] {
             for moves in [1_usize, 2, 4, 6, 21, 33] {
                 let pairs: Vec<_> = (0..moves).map(|_| random.curved_pair(n)).collect();
                 let g = random.vector(n);
                 let held = &pairs[moves.saturating_sub(memory)..];
                 let want = scaled(-1.0, &times(&dense_bfgs(held, n), &g));
-                let (d, lbfgs) = after_pairs(memory, &pairs, &g);
-                let off = distance(&d, &want) / norm(&want);
-                assert!(
-                    off <= 1e-10,
-                    "n = {n}, m = {memory}, {moves} moves: {off:e}"
-                );
-                assert_eq!((lbfgs.pairs(), lbfgs.refused()), (held.len(), 0));
-                // The secant equation H y = s of the newest pair.
-                let (s, y) = &pairs[moves - 1];
-                let (d, _) = after_pairs(memory, &pairs, y);
-                let off = distance(&d, &scaled(-1.0, s)) / norm(s);
-                assert!(
-                    off <= 1e-10,
-                    "secant, n = {n}, m = {memory}, {moves} moves: {off:e}"
-                );
+                for form in [Form::Compact, Form::TwoLoop] {
+                    let (d, lbfgs) = after_pairs(memory, form, &pairs, &g);
+                    let off = distance(&d, &want) / norm(&want);
+                    assert!(
+                        off <= 1e-10,
+                        "{form:?}, n = {n}, m = {memory}, {moves} moves: {off:e}"
+                    );
+                    assert_eq!((lbfgs.pairs(), lbfgs.skipped()), (held.len(), 0));
+                    // The secant equation H y = s of the newest pair.
+                    let (s, y) = &pairs[moves - 1];
+                    let (d, _) = after_pairs(memory, form, &pairs, y);
+                    let off = distance(&d, &scaled(-1.0, s)) / norm(s);
+                    assert!(
+                        off <= 1e-10,
+                        "{form:?}, secant, n = {n}, m = {memory}, {moves} moves: {off:e}"
+                    );
+                }
             }
         }
     }
 }
 
 #[test]
-fn a_pair_without_positive_curvature_is_refused_and_leaves_its_place_empty() {
+fn a_pair_without_positive_curvature_is_skipped_and_the_others_stay() {
     let mut random = Random(5);
     let n = 8;
     for memory in [1, 2, 4] {
         for spoiled in [0, 2, 5] {
-            let mut pairs: Vec<_> = (0..6).map(|_| random.curved_pair(n)).collect();
-            pairs[spoiled].1 = scaled(-1.0, &pairs[spoiled].1);
-            let g = random.vector(n);
-            let (d, lbfgs) = after_pairs(memory, &pairs, &g);
-            assert_eq!(lbfgs.refused(), 1);
-            // A refusal takes the oldest pair's place if all were taken; pairs after it fill the memory again.
-            let since = pairs.len() - 1 - spoiled;
-            let before = spoiled.min(memory - 1);
-            let kept = (before + since).min(memory);
-            let good: Vec<_> = (0..pairs.len()).filter(|i| *i != spoiled).collect();
-            let held: Vec<_> = good[good.len() - kept..]
-                .iter()
-                .map(|i| pairs[*i].clone())
-                .collect();
-            assert_eq!(lbfgs.pairs(), kept, "m = {memory}, spoiled {spoiled}");
-            let want = scaled(-1.0, &times(&dense_bfgs(&held, n), &g));
-            assert!(distance(&d, &want) <= 1e-10 * norm(&want));
-            assert_eq!(Direction::<Vec<f64>>::unit_step(&lbfgs), kept > 0);
+            for form in [Form::Compact, Form::TwoLoop] {
+                let mut pairs: Vec<_> = (0..6).map(|_| random.curved_pair(n)).collect();
+                pairs[spoiled].1 = scaled(-1.0, &pairs[spoiled].1);
+                let g = random.vector(n);
+                let (d, lbfgs) = after_pairs(memory, form, &pairs, &g);
+                assert_eq!((lbfgs.skipped(), lbfgs.pairs()), (1, memory.min(5)));
+                pairs.remove(spoiled);
+                let held = &pairs[pairs.len() - memory.min(5)..];
+                let want = scaled(-1.0, &times(&dense_bfgs(held, n), &g));
+                assert!(distance(&d, &want) <= 1e-10 * norm(&want));
+                assert!(Direction::<Vec<f64>>::unit_step(&lbfgs));
+            }
         }
     }
 }
@@ -385,8 +383,8 @@ fn powells_test_restarts_at_its_threshold_and_nowhere_else() {
     let d = vec![-1.0, -3.0];
     for update in UPDATES {
         for (t, far) in [
-            (0.2, true),
-            (-0.2, true),
+            (0.201, true),
+            (-0.201, true),
             (0.19, false),
             (-0.19, false),
             (0.6, true),
@@ -438,21 +436,38 @@ fn first_trials_follow_their_formulas() {
                     .unwrap();
                 let searches = first_steps(descent, &landscape);
                 assert!(searches.len() > 3, "{way:?} {choice:?}");
+                // The documented correction of the natural step, by logarithms.
+                let mut mean = 0.0_f64;
                 for (k, s) in searches.iter().enumerate() {
+                    if let (true, Some(last)) = (k > 1, s.last) {
+                        let before = &searches[k - 1];
+                        let moved: Vec<f64> =
+                            s.x.iter().zip(&before.x).map(|(a, b)| a - b).collect();
+                        let there = dot(&s.g, &moved) / last.step;
+                        let vanishes = last.step * last.slope / (last.slope - there);
+                        mean += (vanishes.clamp(1.0 / 16.0, 16.0).ln() - mean) / 8.0;
+                    }
+                    let corrected = (mean / 2.0).exp().clamp(0.25, 4.0);
                     let by_direction = matches!(way, Way::Lbfgs(_)) && k > 0;
                     let opening = 0.01 * max_abs(&s.x) / max_abs(&s.g);
                     let want = match (choice, s.last) {
                         (Unit, _) => 1.0,
                         (Fixed(step), _) => step,
-                        (ByDirection, _) if by_direction => 1.0,
+                        (ByDirection, _) if by_direction => corrected,
                         (_, None) => opening,
                         // Nocedal & Wright 2006, section 3.5: the two formulas there.
                         (SameChange, Some(last)) => last.step * last.slope / s.slope,
                         (_, Some(last)) => 2.0 * (s.value - last.value) / s.slope,
                     };
                     let off = (s.first - want).abs() / want;
+                    // Differences of points tell a slope less sharply than the run knows it.
+                    let sharp = if choice == ByDirection && by_direction {
+                        1e-8
+                    } else {
+                        1e-14
+                    };
                     assert!(
-                        off <= 1e-14,
+                        off <= sharp,
                         "{way:?} {choice:?}, search {k}: {} for {want}",
                         s.first
                     );
@@ -1233,11 +1248,19 @@ impl<D: Direction<Vec<f64>>> Direction<Vec<f64>> for Spy<D> {
 // ---- Directions driven by hand ----
 
 /// Tells a direction of a move along `d` between points with these gradients.
-fn feed(direction: &mut impl Direction<Vec<f64>>, g_old: &[f64], g_new: &Vec<f64>, d: &Vec<f64>) {
+fn feed(direction: &mut impl Direction<Vec<f64>>, g_old: &[f64], g_new: &Vec<f64>, d: &[f64]) {
     let x_old = vec![0.0; d.len()];
     direction.begin(&x_old);
-    let mut g_old = g_old.to_vec();
-    direction.moved(Moved::new(1.0, d, (&x_old, d), (&mut g_old, g_new)));
+    let (mut g_old, mut d) = (g_old.to_vec(), d.to_vec());
+    let x_new = d.clone();
+    let survey = direction.survey(g_new, &g_old, &d);
+    direction.moved(Moved::new(
+        1.0,
+        &mut d,
+        (&x_old, &x_new),
+        (&mut g_old, g_new),
+        survey,
+    ));
 }
 
 /// The direction after that move.
@@ -1256,15 +1279,33 @@ fn after_move(
 /// The L-BFGS direction at gradient `g` after moves with these `(s, y)`, and its state.
 fn after_pairs(
     memory: usize,
+    form: Form,
     pairs: &[(Vec<f64>, Vec<f64>)],
     g: &Vec<f64>,
 ) -> (Vec<f64>, Lbfgs<Vec<f64>>) {
-    let mut lbfgs = Lbfgs::new(memory).unwrap();
+    let mut lbfgs = Lbfgs::new(memory)
+        .unwrap()
+        .with_form(form)
+        .with_initial_scale(InitialScale::Newest);
     let zero = vec![0.0; g.len()];
     lbfgs.begin(&zero);
-    for (s, y) in pairs {
-        let mut g_old = zero.clone();
-        lbfgs.moved(Moved::new(1.0, s, (&zero, s), (&mut g_old, y)));
+    // Gradients that follow one another and end at `g`.
+    let mut gradients = vec![g.clone()];
+    for (_, y) in pairs.iter().rev() {
+        let after = &gradients[gradients.len() - 1];
+        gradients.push(after.iter().zip(y).map(|(g, y)| g - y).collect());
+    }
+    gradients.reverse();
+    for ((s, _), g) in pairs.iter().zip(gradients.windows(2)) {
+        let (mut d, mut g_old) = (s.clone(), g[0].clone());
+        let survey = lbfgs.survey(&g[1], &g_old, &d);
+        lbfgs.moved(Moved::new(
+            1.0,
+            &mut d,
+            (&zero, s),
+            (&mut g_old, &g[1]),
+            survey,
+        ));
     }
     let mut d = vec![f64::NAN; g.len()];
     let known = lbfgs.direction(&zero, g, &mut d);

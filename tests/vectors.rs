@@ -215,14 +215,13 @@ impl Vector for Faulty {
         } else {
             None
         };
-        let kept = if self.fault == Fault::StepFromAccumulates {
-            1.0
-        } else {
-            0.0
-        };
         let mut numbers = self.numbers.clone();
         self.unless(skip, |i| {
-            numbers[i] = kept * numbers[i] + x.numbers[i] + a * d.numbers[i];
+            let kept = match self.fault {
+                Fault::StepFromAccumulates => numbers[i],
+                _ => 0.0,
+            };
+            numbers[i] = kept + x.numbers[i] + a * d.numbers[i];
         });
         self.numbers = numbers;
     }

@@ -1,6 +1,7 @@
 //! Nonlinear conjugate gradients.
 
 use super::{Direction, Moved, negative};
+use crate::vector::Survey;
 use crate::{Real, Vector};
 
 /// The formula for `beta` in `d = -g + beta d`.
@@ -37,7 +38,7 @@ pub enum Update {
 /// 5.7); for Polak–Ribière+ and Hestenes–Stiefel+ that needs the sufficient descent condition in addition (theorem by
 /// J. C. Gilbert & J. Nocedal, SIAM J. Optim. 2 (1992) 21-42, doi:10.1137/0802003).
 ///
-/// It owns no vectors: the change of the gradient is formed in the place of the old gradient.
+/// It owns no vectors; where the gradient changed little, its change is formed in the place of the old one.
 ///
 /// ```
 /// use surefoot::{Descent, acceptance::StrongWolfe, finder::MoreThuente};
@@ -57,6 +58,10 @@ pub struct ConjugateGradient {
     restart: Option<f64>,
     /// The factor of the last direction in the next one; `None` where there is no last direction.
     beta: Option<f64>,
+    /// `g.g` at the point of the run, once a move was made.
+    square: Option<f64>,
+    /// `g.d` there along the direction of that move.
+    slope: f64,
     restarts: u64,
 }
 
@@ -73,6 +78,8 @@ impl ConjugateGradient {
             update,
             restart,
             beta: None,
+            square: None,
+            slope: 0.0,
             restarts: 0,
         }
     }
@@ -92,28 +99,49 @@ impl ConjugateGradient {
     }
 }
 
-/// `beta` after a move; `y` takes the place of the old gradient, because differences of inner products would cancel where
-/// the gradient hardly changes.
-fn beta<V: Vector>(update: Update, m: Moved<'_, V>) -> f64 {
-    let dot = |a: &V, b: &V| a.dot(b).to_double();
-    let old_old = dot(m.g_old, m.g_old);
-    let y = m.g_old;
-    y.scale(-num_traits::one::<V::Scalar>());
-    y.add_scaled(num_traits::one(), m.g_new);
-    let (d, g) = (m.direction, m.g_new);
-    match update {
-        Update::FletcherReeves => dot(g, g) / old_old,
-        Update::PolakRibierePlus => (dot(g, y) / old_old).max(0.0),
-        Update::HestenesStiefelPlus => (dot(g, y) / dot(d, y)).max(0.0),
-        Update::DaiYuan => dot(g, g) / dot(d, y),
-        Update::HagerZhang => {
-            let d_y = dot(d, y);
-            let beta = (dot(g, y) - 2.0 * dot(d, g) * (dot(y, y) / d_y)) / d_y; // eq. 1.3
-            let eta = -1.0 / (root(dot(d, d)) * root(old_old).min(0.01)); // eq. 1.6
-            // eq. 1.5; where the gradient did not change, beta is not a number and must not become eta.
-            if beta < eta { eta } else { beta }
+/// The products that `beta` is made of; `y` is the change of the gradient.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Terms {
+    pub(super) slope: f64,
+    pub(super) g_g: f64,
+    pub(super) g_y: f64,
+    pub(super) d_y: f64,
+    pub(super) y_y: f64,
+}
+
+impl Terms {
+    fn of<T: Real>(survey: &Survey<T>) -> Self {
+        Terms {
+            slope: survey.slope.to_double(),
+            g_g: survey.square.to_double(),
+            g_y: survey.change_gradient.to_double(),
+            d_y: survey.change_slope.to_double(),
+            y_y: survey.change_square.to_double(),
         }
     }
+
+    /// `beta` after a move from a gradient with this square; that of Hager and Zhang without its lower bound.
+    pub(super) fn beta(&self, update: Update, square: f64) -> f64 {
+        match update {
+            Update::FletcherReeves => self.g_g / square,
+            Update::PolakRibierePlus => (self.g_y / square).max(0.0),
+            Update::HestenesStiefelPlus => (self.g_y / self.d_y).max(0.0),
+            Update::DaiYuan => self.g_g / self.d_y,
+            // eq. 1.3
+            Update::HagerZhang => (self.g_y - 2.0 * self.slope * (self.y_y / self.d_y)) / self.d_y,
+        }
+    }
+}
+
+/// `beta` after a move.
+fn beta<T: Real>(update: Update, survey: &Survey<T>, square: f64) -> f64 {
+    let beta = Terms::of(survey).beta(update, square);
+    if update != Update::HagerZhang {
+        return beta;
+    }
+    let eta = -1.0 / (root(survey.direction_square.to_double()) * root(square).min(0.01)); // eq. 1.6
+    // eq. 1.5; where the gradient did not change, beta is not a number and must not become eta.
+    if beta < eta { eta } else { beta }
 }
 
 fn root(x: f64) -> f64 {
@@ -123,31 +151,46 @@ fn root(x: f64) -> f64 {
 impl<V: Vector> Direction<V> for ConjugateGradient {
     fn begin(&mut self, _: &V) {
         self.beta = None;
+        self.square = None;
         self.restarts = 0;
     }
 
     fn direction(&mut self, _: &V, g: &V, d: &mut V) -> Option<V::Scalar> {
         match self.beta {
             // Also where beta is 0: what `d` holds may not be finite.
-            None | Some(0.0) => negative(g, d),
+            None | Some(0.0) => {
+                negative(g, d);
+                Some(V::Scalar::of(-self.square?))
+            }
             Some(beta) => {
-                d.scale(V::Scalar::of(beta));
-                d.add_scaled(-num_traits::one::<V::Scalar>(), g);
+                d.scale_add(V::Scalar::of(beta), -num_traits::one::<V::Scalar>(), g);
+                Some(V::Scalar::of(beta * self.slope - self.square?))
             }
         }
-        None
     }
 
     fn moved(&mut self, moved: Moved<'_, V>) {
+        let (g, d) = (moved.g_new, &*moved.direction);
+        let mut survey = moved.survey;
+        let square = self
+            .square
+            .unwrap_or_else(|| moved.g_old.dot(moved.g_old).to_double());
+        if !survey.change_is_sure() {
+            moved.g_old.subtract_from(g);
+            survey = survey.with_change(g, moved.g_old, d);
+        }
+        let g_g = survey.square.to_double();
+        self.square = Some(g_g);
+        self.slope = survey.slope.to_double();
         let far_from_orthogonal = self.restart.is_some_and(|share| {
-            let both = moved.g_new.dot(moved.g_old).to_double();
-            both.abs() >= share * moved.g_new.dot(moved.g_new).to_double()
+            let both = g_g - survey.change_gradient.to_double();
+            both.abs() >= share * g_g
         });
         if far_from_orthogonal {
             self.beta = None;
             self.restarts += 1;
         } else {
-            self.beta = Some(beta(self.update, moved)).filter(|b| b.is_finite());
+            self.beta = Some(beta(self.update, &survey, square)).filter(|b| b.is_finite());
         }
     }
 

@@ -4,19 +4,25 @@
 //! |---|---|---|
 //! | [`SteepestDescent`] | 0 | from the last decrease |
 //! | [`ConjugateGradient`] | 0 | from the last decrease |
-//! | [`Lbfgs`] (feature `alloc`) | 2 per pair | 1, once there is a pair |
+//! | [`PreconditionedDescent`], [`PreconditionedGradient`] | 0, 1 | from the last decrease |
+//! | [`Lbfgs`] (feature `alloc`) | 2 per pair (half of that with [`SinglePairs`]) | 1, once there is a pair |
 
 mod conjugate_gradient;
 #[cfg(feature = "alloc")]
 mod lbfgs;
+mod preconditioned;
+mod preconditioner;
 mod steepest_descent;
 
 pub use conjugate_gradient::{ConjugateGradient, Update};
 #[cfg(feature = "alloc")]
-pub use lbfgs::{Lbfgs, LbfgsError};
+pub use lbfgs::{Form, History, InitialScale, Lbfgs, LbfgsError, Pairs, SinglePairs};
+pub use preconditioned::{PreconditionedDescent, PreconditionedGradient};
+pub use preconditioner::{Diagonal, FromFn, Identity, Preconditioner, preconditioner};
 pub use steepest_descent::SteepestDescent;
 
 use crate::Vector;
+use crate::vector::Survey;
 
 /// A move that a run made.
 #[derive(Debug)]
@@ -24,25 +30,30 @@ use crate::Vector;
 pub struct Moved<'a, V: Vector> {
     /// The accepted step `a`.
     pub step: V::Scalar,
-    /// The direction `d` it was made along.
-    pub direction: &'a V,
+    /// The direction `d` it was made along. What is left here is what [`Direction::direction`] finds in its place: a history may
+    /// keep the buffer and leave another of the same length.
+    pub direction: &'a mut V,
     /// The point before.
     pub x_old: &'a V,
     /// The point after: `x_old + a d`.
     pub x_new: &'a V,
-    /// The gradient before. Nobody reads it afterwards: it may be overwritten, as scratch.
+    /// The gradient before. Nobody reads it afterwards: it may be overwritten, as scratch, or kept and another buffer left.
     pub g_old: &'a mut V,
     /// The gradient after, finite.
     pub g_new: &'a V,
+    /// What [`Direction::survey`] returned for `g_new`.
+    pub survey: Survey<V::Scalar>,
 }
 
 impl<'a, V: Vector> Moved<'a, V> {
-    /// A move from `x_old` to `x_new = x_old + step direction`, for a loop of your own around a [`Direction`].
+    /// A move from `x_old` to `x_new = x_old + step direction`, for a loop of your own around a [`Direction`]; `survey` is what
+    /// the direction told about `g_new`.
     pub fn new(
         step: V::Scalar,
-        direction: &'a V,
+        direction: &'a mut V,
         (x_old, x_new): (&'a V, &'a V),
         (g_old, g_new): (&'a mut V, &'a V),
+        survey: Survey<V::Scalar>,
     ) -> Self {
         Moved {
             step,
@@ -51,6 +62,7 @@ impl<'a, V: Vector> Moved<'a, V> {
             x_new,
             g_old,
             g_new,
+            survey,
         }
     }
 }
@@ -78,9 +90,18 @@ pub trait Direction<V: Vector> {
         self.reset();
     }
 
-    /// Writes the direction at `x` with gradient `g` into `d`, which still holds the direction before (arbitrary
+    /// Writes the direction at `x` with gradient `g` into `d`, which still holds what [`moved`](Direction::moved) left there (arbitrary
     /// numbers at the start of a run and after a reset). Returns `g . d` where it is known without another pass.
     fn direction(&mut self, x: &V, g: &V, d: &mut V) -> Option<V::Scalar>;
+
+    /// Looks at the gradient `g` at a trial point, where `old` is the gradient at the point before and `d` the direction between
+    /// the two: its slope, its largest component, and what the direction will want to know of it if the trial is accepted. The
+    /// gradient of a move is always the one surveyed last.
+    ///
+    /// Default: everything that a [`Survey`] holds, in the one pass of [`Vector::survey`].
+    fn survey(&mut self, g: &V, old: &V, d: &V) -> Survey<V::Scalar> {
+        g.survey(old, d, &[], &mut [])
+    }
 
     /// Learns from a move.
     fn moved(&mut self, moved: Moved<'_, V>);
@@ -102,6 +123,9 @@ macro_rules! forward_direction {
         }
         fn direction(&mut self, x: &V, g: &V, d: &mut V) -> Option<V::Scalar> {
             (**self).direction(x, g, d)
+        }
+        fn survey(&mut self, g: &V, old: &V, d: &V) -> Survey<V::Scalar> {
+            (**self).survey(g, old, d)
         }
         fn moved(&mut self, moved: Moved<'_, V>) {
             (**self).moved(moved);
@@ -130,6 +154,5 @@ pub type BoxedDirection<V> = alloc::boxed::Box<dyn Direction<V> + Send>;
 
 /// `d = -g`.
 fn negative<V: Vector>(g: &V, d: &mut V) {
-    d.assign(g);
-    d.scale(-num_traits::one::<V::Scalar>());
+    d.combine(-num_traits::one::<V::Scalar>(), g, &[], &[]);
 }

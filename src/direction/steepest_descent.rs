@@ -2,6 +2,7 @@
 
 use super::{Direction, Moved, negative};
 use crate::Vector;
+use crate::vector::Survey;
 
 /// Steepest descent: `d = -g`.
 ///
@@ -15,6 +16,9 @@ impl<V: Vector> Direction<V> for SteepestDescent {
     fn direction(&mut self, _: &V, g: &V, d: &mut V) -> Option<V::Scalar> {
         negative(g, d);
         None
+    }
+    fn survey(&mut self, g: &V, _: &V, d: &V) -> Survey<V::Scalar> {
+        Survey::slope_alone(g, d)
     }
     fn moved(&mut self, _: Moved<'_, V>) {}
     fn reset(&mut self) {}

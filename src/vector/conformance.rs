@@ -27,6 +27,26 @@ pub enum Broken {
     /// `step_from` differs from `x + a d`.
     #[error("step_from() is not x + a d")]
     StepFrom,
+    /// `finite_step_from` differs from `x + a d`, or misjudges whether it is finite.
+    #[error(
+        "finite_step_from() is not x + a d, or does not tell whether every component is finite"
+    )]
+    FiniteStepFrom,
+    /// `scale_add` differs from `a self + b x`.
+    #[error("scale_add() is not a self + b x")]
+    ScaleAdd,
+    /// `subtract_from` differs from `x - self`.
+    #[error("subtract_from() is not x - self")]
+    SubtractFrom,
+    /// `dots` differs from `dot` with each.
+    #[error("dots() is not dot() with each vector")]
+    Dots,
+    /// `survey` differs from the inner products it stands for.
+    #[error("survey() does not tell what dot(), dots() and max_abs() tell")]
+    Survey,
+    /// `combine` differs from `a x + c_0 v_0 + c_1 v_1 + ...`.
+    #[error("combine() is not a x plus the scaled vectors")]
+    Combine,
     /// `max_abs` differs from the largest magnitude.
     #[error("max_abs() is not the largest magnitude, or not 0 for an empty vector")]
     MaxAbs,
@@ -98,12 +118,35 @@ pub fn check<V: Vector>(make: impl Fn(&[V::Scalar]) -> V, dim: usize) -> Result<
     v.add_scaled(num(-2), &vb);
     let moved = zip(&|x, y| x - num(2) * y);
     ensure(same(&v, &moved), Broken::AddScaled)?;
-    v.assign(&vb); // neither 0 nor the result: a method that adds to what is there, or leaves it, shows
-    v.step_from(&va, num(-2), &vb);
-    ensure(same(&v, &moved), Broken::StepFrom)?;
+    // Over numbers that are neither 0 nor the result, then over NaN, which a buffer may hold: a method that adds to what is
+    // there, or leaves it, shows.
+    let nan = make(&alloc::vec![V::Scalar::nan(); dim]);
+    for before in [&vb, &nan] {
+        v = before.clone();
+        v.assign(&va);
+        ensure(same(&v, &a), Broken::Assign)?;
+        v = before.clone();
+        v.step_from(&va, num(-2), &vb);
+        ensure(same(&v, &moved), Broken::StepFrom)?;
+        v = before.clone();
+        let finite = v.finite_step_from(&va, num(-2), &vb);
+        ensure(finite && same(&v, &moved), Broken::FiniteStepFrom)?;
+    }
+    v = va.clone();
+    v.scale_add(num(3), num(-2), &vb);
+    let both = zip(&|x, y| num(3) * x - num(2) * y);
+    ensure(same(&v, &both), Broken::ScaleAdd)?;
+    v = vb.clone();
+    v.subtract_from(&va);
+    ensure(same(&v, &zip(&|x, y| x - y)), Broken::SubtractFrom)?;
+    several(&make, &a, &b)?;
 
     for at in 0..dim {
-        for bad in [V::Scalar::nan(), V::Scalar::infinity()] {
+        for bad in [
+            V::Scalar::nan(),
+            V::Scalar::infinity(),
+            V::Scalar::neg_infinity(),
+        ] {
             let mut tainted = b.clone();
             tainted[at] = bad;
             let tainted = make(&tainted);
@@ -112,8 +155,80 @@ pub fn check<V: Vector>(make: impl Fn(&[V::Scalar]) -> V, dim: usize) -> Result<
                 !bad.is_nan() || tainted.max_abs().is_nan(),
                 Broken::LosesNan { at },
             )?;
-            ensure(bad.is_nan() || tainted.max_abs() == bad, Broken::MaxAbs)?;
+            ensure(
+                bad.is_nan() || tainted.max_abs() == bad.abs(),
+                Broken::MaxAbs,
+            )?;
+            v = va.clone();
+            let judged = [
+                v.finite_step_from(&tainted, num(2), &vb),
+                v.finite_step_from(&vb, num(2), &tainted),
+            ];
+            ensure(judged == [false; 2], Broken::FiniteStepFrom)?;
+            let told = tainted.survey(&va, &vb, &[], &mut []);
+            let kept = told.max_abs == bad.abs() || bad.is_nan() && told.max_abs.is_nan();
+            ensure(kept && !told.slope.is_finite(), Broken::Survey)?;
         }
+    }
+    Ok(())
+}
+
+/// The methods that take several vectors, against those that take one; with `a` for the gradient.
+fn several<V: Vector>(
+    make: &impl Fn(&[V::Scalar]) -> V,
+    a: &[V::Scalar],
+    b: &[V::Scalar],
+) -> Result<(), Broken> {
+    let num = |k: i64| V::Scalar::of(k as f64);
+    let dot = |x: &[V::Scalar], y: &[V::Scalar]| {
+        let products = x.iter().zip(y).map(|(&x, &y)| x * y);
+        products.fold(num(0), |sum, p| sum + p)
+    };
+    let ensure = |holds: bool, broken: Broken| if holds { Ok(()) } else { Err(broken) };
+    let (va, vb) = (make(a), make(b));
+    // All different, more than any kernel takes at once.
+    for count in [0, 1, 2, 3, 4, 5, 7, 25] {
+        let shifted = |k: usize| -> Vec<V::Scalar> {
+            let each = b.iter().enumerate();
+            each.map(|(i, &y)| y + num(((i + k) % 3) as i64 + k as i64))
+                .collect()
+        };
+        let numbers: Vec<Vec<V::Scalar>> = (0..count).map(shifted).collect();
+        let vectors: Vec<V> = numbers.iter().map(|v| make(v)).collect();
+        let products: Vec<V::Scalar> = numbers.iter().map(|v| dot(v, a)).collect();
+        let mut out = alloc::vec![V::Scalar::nan(); count];
+        va.dots(&vectors, &mut out);
+        ensure(out == products, Broken::Dots)?;
+
+        let d: Vec<V::Scalar> = b.iter().rev().copied().collect();
+        let y: Vec<V::Scalar> = a.iter().zip(b).map(|(&g, &old)| g - old).collect();
+        out.fill(V::Scalar::nan());
+        let told = va.survey(&vb, &make(&d), &vectors, &mut out);
+        let largest = a.iter().fold(num(0), |m, x| x.abs().max(m));
+        let right = [
+            told.slope == dot(a, &d),
+            told.max_abs == largest,
+            told.square == dot(a, a),
+            told.change_gradient == dot(&y, a),
+            told.change_square == dot(&y, &y),
+            told.change_slope == dot(&y, &d),
+            told.direction_square == dot(&d, &d),
+            out == products,
+        ];
+        ensure(right == [true; 8], Broken::Survey)?;
+
+        let coefficients: Vec<V::Scalar> = (0..count).map(|k| num(k as i64 % 4 - 2)).collect();
+        let mut sum: Vec<V::Scalar> = a.iter().map(|&x| num(-3) * x).collect();
+        for (&c, v) in coefficients.iter().zip(&numbers) {
+            for (sum, &x) in sum.iter_mut().zip(v) {
+                *sum = *sum + c * x;
+            }
+        }
+        let mut combined = make(&alloc::vec![V::Scalar::nan(); a.len()]);
+        combined.combine(num(-3), &va, &coefficients, &vectors);
+        let mut off = combined.clone();
+        off.add_scaled(num(-1), &make(&sum));
+        ensure(off.max_abs() == num(0), Broken::Combine)?;
     }
     Ok(())
 }
@@ -129,12 +244,27 @@ pub fn check_empty<V: Vector>(empty: &V) -> Result<(), Broken> {
     v.scale(V::Scalar::of(2.0));
     v.add_scaled(V::Scalar::of(2.0), empty);
     v.step_from(empty, V::Scalar::of(2.0), empty);
+    v.scale_add(V::Scalar::of(2.0), V::Scalar::of(3.0), empty);
+    v.subtract_from(empty);
+    v.combine(
+        zero,
+        empty,
+        &[V::Scalar::of(2.0)],
+        core::slice::from_ref(empty),
+    );
+    let finite = v.finite_step_from(empty, V::Scalar::of(2.0), empty);
+    let mut product = [V::Scalar::nan()];
+    let told = v.survey(empty, empty, core::slice::from_ref(empty), &mut product);
     if v.dim() != 0 {
         Err(Broken::Dim)
     } else if v.dot(empty) != zero {
         Err(Broken::Dot)
     } else if v.max_abs() != zero {
         Err(Broken::MaxAbs)
+    } else if !finite {
+        Err(Broken::FiniteStepFrom)
+    } else if product != [zero] || told.square != zero || told.max_abs != zero {
+        Err(Broken::Survey)
     } else {
         Ok(())
     }
@@ -151,5 +281,16 @@ pub fn exercise_mismatched<V: Vector>(one: &V, other: &V) {
         x.clone().add_scaled(two, y);
         x.clone().step_from(y, two, x);
         x.clone().step_from(x, two, y);
+        x.clone().finite_step_from(x, two, y);
+        x.clone().finite_step_from(y, two, x);
+        x.clone().scale_add(two, two, y);
+        x.clone().subtract_from(y);
+        let (mixed, mut out) = ([y.clone(), x.clone(), y.clone()], [two; 3]);
+        x.dots(&mixed, &mut out);
+        x.survey(x, x, &mixed, &mut out);
+        x.survey(y, x, &mixed, &mut out);
+        x.survey(x, y, &mixed, &mut out);
+        x.clone().combine(two, x, &[two; 3], &mixed);
+        x.clone().combine(two, y, &[two; 3], &mixed);
     }
 }
