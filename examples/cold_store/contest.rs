@@ -203,7 +203,7 @@ pub(crate) fn run(
         run.supply(given).expect("what was wanted was given");
         tally.look(&run, moves, tried);
     }
-    let useless_pairs = run.direction().refused();
+    let useless_pairs = run.direction().skipped();
     let (_, report) = run.finish();
     Account {
         label,

@@ -4,6 +4,8 @@
 //! ```text
 //! cargo run --release --example cold_store                 the invented readings of recovery.csv
 //! cargo run --release --example cold_store -- FILE.csv     readings of your own, of the same shape
+//! cargo run --release --features "experiment plot" --example cold_store -- --report FILE.html
+//!                                                          also a report of the contest, to open in a browser
 //! ```
 //!
 //! | file | what it holds |
@@ -14,6 +16,7 @@
 //! | `fit.rs` | the robust loss as a `surefoot::Objective` |
 //! | `contest.rs` | runs under each rule and with each finder, and why trials were refused |
 //! | `estimates.rs`, `residuals.rs` | standard errors; what is left over and what that says |
+//! | `record.rs` | the contest as records of an experiment, and its report |
 //! | `study.rs`, `page.rs` | all of it together; the page that a person reads |
 
 mod command;
@@ -23,12 +26,14 @@ mod fit;
 mod model;
 mod page;
 mod readings;
+#[cfg(all(feature = "experiment", feature = "plot"))]
+mod record;
 mod residuals;
 mod study;
 
 use command::Command;
 use std::io::{ErrorKind, Write};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 use study::Study;
 
@@ -40,11 +45,11 @@ const BUILT_IN_SOURCE: &str =
 const AT_FAULT: u8 = 2;
 
 fn main() -> ExitCode {
-    let answer = match command::parse(std::env::args_os().skip(1)) {
-        Ok(Command::Help) => Ok((command::HELP.to_owned(), ExitCode::SUCCESS)),
-        Ok(Command::Fit(file)) => study(file),
-        Err(message) => Err(message),
-    };
+    let asked = command::take_report(std::env::args_os().skip(1));
+    let answer = asked.and_then(|(report, rest)| match command::parse(rest.into_iter())? {
+        Command::Help => Ok((command::HELP.to_owned(), ExitCode::SUCCESS)),
+        Command::Fit(file) => study(file, report.as_deref()),
+    });
     match answer {
         Ok((text, code)) => match show(&text) {
             Ok(()) => code,
@@ -61,7 +66,7 @@ fn main() -> ExitCode {
 }
 
 /// The page, and how the program ends.
-fn study(file: Option<PathBuf>) -> Result<(String, ExitCode), String> {
+fn study(file: Option<PathBuf>, report: Option<&Path>) -> Result<(String, ExitCode), String> {
     let (source, bytes) = match file {
         None => (BUILT_IN_SOURCE.to_owned(), BUILT_IN.to_vec()),
         Some(path) => {
@@ -85,7 +90,30 @@ fn study(file: Option<PathBuf>) -> Result<(String, ExitCode), String> {
     } else {
         ExitCode::FAILURE
     };
-    Ok((study.to_string(), code))
+    let mut text = study.to_string();
+    match report.map(|path| write_report(path, &study)) {
+        None => {}
+        Some(Ok(sentence)) => text.push_str(&format!("\n{sentence}\n")),
+        // The page is shown all the same.
+        Some(Err(message)) => {
+            tell(&message);
+            return Ok((text, ExitCode::from(AT_FAULT)));
+        }
+    }
+    Ok((text, code))
+}
+
+#[cfg(all(feature = "experiment", feature = "plot"))]
+fn write_report(path: &Path, study: &Study) -> Result<String, String> {
+    record::report(path, study)
+}
+
+#[cfg(not(all(feature = "experiment", feature = "plot")))]
+fn write_report(_: &Path, _: &Study) -> Result<String, String> {
+    Err(
+        "this program was built without reports: build it with --features \"experiment plot\""
+            .to_owned(),
+    )
 }
 
 /// Writes to standard output. A reader that has seen enough and closes it is no failure.
