@@ -517,6 +517,7 @@ fn attack_run<T: Number>(
         FirstTrial::BarzilaiBorweinLong,
         FirstTrial::BarzilaiBorweinShort,
         FirstTrial::HagerZhang,
+        FirstTrial::HagerZhangQuadratic,
         FirstTrial::Diminishing { first: 1.0 },
         FirstTrial::LastDecrease,
     ]);

@@ -43,11 +43,12 @@ problem,number,n,m,driver,ending,iterations,values,gradients,value,gradient_max,
 ";
 
 const GULF: &str = "Gulf research and development";
+const EXTENDED_POWELL: &str = "Extended Powell singular";
 
 /// Runs that reach no known minimum, with the reason. A run that is listed here and reaches one is an error too.
 const EXCEPTIONS: &[(&str, usize, usize, &str, &str)] = &[
     // Steepest descent in valleys: the condition number of the Hessian decides (Nocedal & Wright 2006, theorem 3.4), and
-    // 5,000 moves are too few from 3e3 (Kowalik and Osborne) to 1e16 (Meyer).
+    // 5,000 moves are too few from 2.5e3 (extended Rosenbrock, at times) to 1e16 (Meyer).
     ("Powell badly scaled", 2, 2, "steepest descent", "budget"),
     ("Bard", 3, 15, "steepest descent", "budget"),
     ("Meyer", 3, 16, "steepest descent", "budget"),
@@ -55,14 +56,23 @@ const EXCEPTIONS: &[(&str, usize, usize, &str, &str)] = &[
     (GULF, 3, 10, "steepest descent", "budget"),
     ("Powell singular", 4, 4, "steepest descent", "budget"),
     ("Kowalik and Osborne", 4, 11, "steepest descent", "budget"),
+    ("Osborne 1", 5, 33, "steepest descent", "budget"),
     ("Biggs EXP6", 6, 13, "steepest descent", "budget"),
+    ("Osborne 2", 11, 65, "steepest descent", "budget"),
     ("Watson", 6, 31, "steepest descent", "budget"),
     ("Watson", 9, 31, "steepest descent", "budget"),
     ("Watson", 12, 31, "steepest descent", "budget"),
+    ("Extended Rosenbrock", 10, 10, "steepest descent", "budget"),
+    (EXTENDED_POWELL, 12, 12, "steepest descent", "budget"),
+    (EXTENDED_POWELL, 100, 100, "steepest descent", "budget"),
+    ("Penalty I", 4, 5, "steepest descent", "budget"),
+    ("Penalty I", 10, 11, "steepest descent", "budget"),
+    ("Penalty II", 4, 8, "steepest descent", "budget"),
+    ("Penalty II", 10, 20, "steepest descent", "budget"),
+    ("Brown almost-linear", 10, 10, "steepest descent", "budget"),
     // Condition number 1e12, variables of size 1e6 and 1e-6: a step along the gradient is too short to change the last bit
     // of the first variable.
     ("Brown badly scaled", 2, 3, "steepest descent", "search"),
-    ("Brown badly scaled", 2, 3, "Dai-Yuan", "search"),
     // Condition numbers at the minimizer: Meyer 1e16, Watson 1.7e9 (n = 9) and 7e13 (n = 12). With 10 pairs, L-BFGS copes
     // with all but the last.
     ("Meyer", 3, 16, "Fletcher-Reeves", "budget"),
@@ -70,7 +80,6 @@ const EXCEPTIONS: &[(&str, usize, usize, &str, &str)] = &[
     ("Watson", 9, 31, "Fletcher-Reeves", "search"),
     ("Watson", 9, 31, "Polak-Ribiere+", "search"),
     ("Watson", 9, 31, "Hestenes-Stiefel+", "search"),
-    ("Watson", 9, 31, "Dai-Yuan", "search"),
     ("Watson", 9, 31, "Hager-Zhang", "search"),
     ("Watson", 12, 31, "Fletcher-Reeves", "search"),
     ("Watson", 12, 31, "Polak-Ribiere+", "search"),
@@ -109,7 +118,7 @@ fn every_driver_reaches_a_known_minimum_of_every_problem_or_is_a_named_exception
             let key = (
                 problem.name(),
                 problem.dim(),
-                problem.residual_count(),
+                problem.residual_count().unwrap(),
                 driver,
             );
             assert!(seen.contains_key(&key), "{key:?} is missing");
@@ -364,9 +373,9 @@ impl Row {
         };
         Row {
             problem: problem.name(),
-            number: problem.number(),
+            number: problem.number().unwrap(),
             n: problem.dim(),
-            m: problem.residual_count(),
+            m: problem.residual_count().unwrap(),
             driver,
             ending: ending(&report.ending),
             iterations: report.iterations,

@@ -48,7 +48,7 @@ fn runs_come_out(cost: Cost) -> usize {
             .unwrap();
         let name = format!("function {} from {first:e}", curve.number);
         let accepted = found.outcome.accepted().expect("a step");
-        assert_eq!(evaluations, run.get("evaluations"), "{name}");
+        assert_eq!(evaluations, run.get::<u32>("evaluations"), "{name}");
         assert_eq!(found.outcome.trials, evaluations, "{name}");
         assert_eq!(
             two_digits(accepted.step),

@@ -311,7 +311,11 @@ fn backtracking_shortens_as_often_as_worked_out() {
             .unwrap();
         let trial = found.outcome.accepted().unwrap();
         let what = format!("{} {} {iteration}", line.text("ratio"), line.text("c1"));
-        assert_eq!(found.outcome.trials - 1, line.get("shortenings"), "{what}");
+        assert_eq!(
+            found.outcome.trials - 1,
+            line.get::<u32>("shortenings"),
+            "{what}"
+        );
         // Steepest descent in this valley enlarges a rounding error by up to 1e6 within twelve iterations.
         let worked: f64 = line.get("value");
         assert!(

@@ -856,6 +856,7 @@ fn duels() -> impl Strategy<Value = Duel> {
         FirstTrial::SameChange,
         FirstTrial::BarzilaiBorweinLong,
         FirstTrial::BarzilaiBorweinShort,
+        FirstTrial::HagerZhangQuadratic,
     ]);
     let reference = prop::sample::select(vec![
         Reference::Current,

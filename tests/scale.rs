@@ -289,6 +289,7 @@ fn runs_have_no_unit_of_the_variables() {
                 FirstTrial::BarzilaiBorweinLong,
                 FirstTrial::BarzilaiBorweinShort,
                 FirstTrial::HagerZhang,
+                FirstTrial::HagerZhangQuadratic,
             ];
             let by_gradient = if *name == "L-BFGS" {
                 &[][..]
