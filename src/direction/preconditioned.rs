@@ -47,7 +47,8 @@ impl<V: Vector, P: Preconditioner<V>> Direction<V> for PreconditionedDescent<P> 
 ///
 /// ```
 /// use surefoot::direction::{Diagonal, PreconditionedGradient, Update};
-/// let direction = PreconditionedGradient::new(Update::HestenesStiefelPlus, Diagonal(vec![1.0, 0.01]));
+/// let metric = Diagonal(vec![1.0, 0.01]);
+/// let direction: PreconditionedGradient<Vec<f64>, _> = PreconditionedGradient::new(Update::HestenesStiefelPlus, metric);
 /// ```
 #[derive(Clone, Debug, PartialEq)]
 pub struct PreconditionedGradient<V, P> {

@@ -119,8 +119,8 @@ where
     pub(super) fn fail(&mut self, ending: Ending<V::Scalar>) {
         let drowned = |step| -self.slope * step <= self.rounding_of_value();
         let at_rounding = match ending {
-            // Values that move by no more than rounding are no evidence against the gradient either.
-            Ending::WrongSlope { step, .. } | Ending::Flat { step, .. } => drowned(step),
+            // Where the first trial promised no more than rounding, values are no evidence against the gradient either.
+            Ending::WrongSlope { .. } | Ending::Flat { .. } => drowned(self.search.first_step()),
             other => self.rescue.is_some() && closed_in(other).is_some_and(drowned),
         };
         self.end(if at_rounding {

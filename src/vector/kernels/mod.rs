@@ -553,8 +553,9 @@ impl<T: Real> Kernel<T> for LargestOrNan<'_, T> {
 /// ```
 /// use surefoot::vector::kernels::norm;
 /// assert_eq!(norm(&[3.0, 4.0]), 5.0);
-/// assert_eq!(norm(&[3e200, -4e200]), 5e200);
-/// assert_eq!(norm(&[3e-200, 4e-200]), 5e-200);
+/// let (large, small) = (2f64.powi(700), 2f64.powi(-700));
+/// assert_eq!(norm(&[3.0 * large, -4.0 * large]), 5.0 * large);
+/// assert_eq!(norm(&[3.0 * small, 4.0 * small]), 5.0 * small);
 /// ```
 pub fn norm<T: Real>(x: &[T]) -> T {
     let square = dot(x, x);
