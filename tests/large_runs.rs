@@ -1,4 +1,5 @@
-//! Runs with very many variables end where theory says. Full size with optimisation; smaller without, to end in time.
+//! Runs with very many variables end where theory says. Smaller without optimisation, to end in time; the surface has its full
+//! size, 300 x 1,000, where SUREFOOT_LARGE is set.
 #![cfg(feature = "problems")]
 
 use surefoot::acceptance::WeakWolfe;
@@ -46,16 +47,17 @@ fn extended_rosenbrock_ends_at_ones() {
 fn a_minimal_surface_ends_within_the_discretisation_of_its_closed_form() {
     // Piecewise linear elements: the error at the nodes falls with the square of the mesh, so a mesh of twice the width tells
     // what to expect (tests/large_problems.rs has the orders).
-    let (nx, ny) = if cfg!(debug_assertions) {
-        (30, 100)
-    } else {
-        (300, 1000)
+    let (nx, ny) = match (cfg!(debug_assertions), std::env::var("SUREFOOT_LARGE")) {
+        (true, _) => (30, 100),
+        (false, Err(_)) => (150, 500),
+        (false, Ok(_)) => (300, 1000),
     };
     let off = |nx, ny| {
         let boundary = SurfaceBoundary::Catenoid;
         let problem = minimal_surface(boundary, nx, ny).unwrap();
-        let report = run(problem, 1e-9);
-        assert!(report.converged(), "{}", report.ending);
+        // What is left of the gradient is far below the discretisation: the error is that of the elements.
+        let report = run(problem, 1e-11);
+        assert!(report.gradient_max.unwrap() <= 1e-10, "{}", report.ending);
         let exact = boundary.heights(nx, ny).unwrap();
         let off = report.point.iter().zip(&exact).map(|(a, b)| (a - b).abs());
         let off = off.fold(0.0, f64::max);
