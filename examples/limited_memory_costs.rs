@@ -15,6 +15,9 @@
 //! stopping test (measured once, for this comparison; the functions are those of J. Nocedal & S. J. Wright, Numerical Optimization, 2nd
 //! ed. 2006, table 7.1). It is there to be beaten, not to be met.
 
+#[path = "shared/csv_option.rs"]
+mod csv_option;
+
 use std::error::Error;
 use std::process::ExitCode;
 
@@ -181,20 +184,5 @@ fn run(csv: bool) -> Result<(), Box<dyn Error>> {
 }
 
 fn main() -> ExitCode {
-    let arguments: Vec<_> = std::env::args().skip(1).collect();
-    let csv = match arguments.iter().map(String::as_str).collect::<Vec<_>>()[..] {
-        [] => false,
-        ["--csv"] => true,
-        _ => {
-            eprintln!("limited_memory_costs takes no arguments but --csv");
-            return ExitCode::from(2);
-        }
-    };
-    match run(csv) {
-        Ok(()) => ExitCode::SUCCESS,
-        Err(error) => {
-            eprintln!("limited_memory_costs: {error}");
-            ExitCode::FAILURE
-        }
-    }
+    csv_option::main("limited_memory_costs", run)
 }

@@ -16,6 +16,9 @@
 //! Times are the least of several rounds in which the contenders of a row take turns, those of iterations the median of 30. One thread,
 //! but for the last lines of the table.
 
+#[path = "shared/csv_option.rs"]
+mod csv_option;
+
 use std::error::Error;
 use std::hint::black_box;
 use std::process::ExitCode;
@@ -428,20 +431,5 @@ fn run(csv: bool) -> Result<(), Box<dyn Error>> {
 }
 
 fn main() -> ExitCode {
-    let arguments: Vec<_> = std::env::args().skip(1).collect();
-    let csv = match arguments.iter().map(String::as_str).collect::<Vec<_>>()[..] {
-        [] => false,
-        ["--csv"] => true,
-        _ => {
-            eprintln!("memory_speed takes no arguments but --csv");
-            return ExitCode::from(2);
-        }
-    };
-    match run(csv) {
-        Ok(()) => ExitCode::SUCCESS,
-        Err(error) => {
-            eprintln!("memory_speed: {error}");
-            ExitCode::FAILURE
-        }
-    }
+    csv_option::main("memory_speed", run)
 }

@@ -10,6 +10,8 @@
 #[path = "shared/finders.rs"]
 mod shared;
 
+#[path = "shared/csv_option.rs"]
+mod csv_option;
 use std::error::Error;
 use std::process::ExitCode;
 
@@ -43,22 +45,7 @@ fn evaluations(
 }
 
 fn main() -> ExitCode {
-    let arguments: Vec<String> = std::env::args().skip(1).collect();
-    let csv = match arguments.iter().map(String::as_str).collect::<Vec<_>>()[..] {
-        [] => false,
-        ["--csv"] => true,
-        _ => {
-            eprintln!("usage: more_thuente [--csv]");
-            return ExitCode::from(2);
-        }
-    };
-    match run(csv) {
-        Ok(()) => ExitCode::SUCCESS,
-        Err(error) => {
-            eprintln!("{error}");
-            ExitCode::FAILURE
-        }
-    }
+    csv_option::main("more_thuente", run)
 }
 
 fn run(csv: bool) -> Result<(), Box<dyn Error>> {

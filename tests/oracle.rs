@@ -5,7 +5,7 @@
 mod support;
 
 use std::collections::BTreeMap;
-use support::rays::RandomRay;
+use support::rays::{RandomRay, Stream};
 use surefoot::acceptance::{Goldstein, StrongWolfe, SufficientDecrease, WeakWolfe};
 use surefoot::{BoxedFinder, BoxedRule, Ending, Limits, Ray, StepSearch};
 
@@ -350,21 +350,7 @@ fn scan(case: &Case, upper: f64) -> Vec<(f64, (f64, f64))> {
     within.chain(last).map(|a| (a, (case.at)(a))).collect()
 }
 
-/// G. Marsaglia, "Xorshift RNGs", J. Stat. Software 8 (2003) issue 14, triple (13, 7, 17).
-struct Stream(u64);
-
 impl Stream {
-    fn new(seed: u64) -> Self {
-        Stream(seed.wrapping_mul(0x9E37_79B9_7F4A_7C15) | 1)
-    }
-
-    fn next(&mut self) -> f64 {
-        self.0 ^= self.0 << 13;
-        self.0 ^= self.0 >> 7;
-        self.0 ^= self.0 << 17;
-        (self.0 >> 11) as f64 / (1_u64 << 53) as f64
-    }
-
     fn between(&mut self, low: f64, high: f64) -> f64 {
         low + (high - low) * self.next()
     }

@@ -9,9 +9,7 @@ use surefoot::finder::{
     Backtracking, Bisection, BracketZoom, InterpolatingBacktracking, MoreThuente, ThreePoint,
 };
 use surefoot::search::{Entry, Fate};
-use surefoot::{
-    BoxedFinder, BoxedRule, Condition, Descent, Given, Objective, Report, Run, Stopping, Want,
-};
+use surefoot::{BoxedFinder, BoxedRule, Condition, Descent, Given, Report, Run, Stopping};
 
 /// How far each run goes: `max|g| <= TOLERANCE`, gradient of the mean loss by the fit's coordinates.
 pub(crate) const TOLERANCE: f64 = 1e-6;
@@ -218,16 +216,7 @@ pub(crate) fn run(
 /// What the run asks for next.
 fn evaluate(run: &mut Search, fit: &mut Fit<'_>) -> Option<Given<f64>> {
     let request = run.request()?;
-    let answer = match request.want {
-        Want::Value => fit.value(request.point).map(Given::Value),
-        Want::Gradient => fit
-            .gradient(request.point, request.gradient)
-            .map(|()| Given::Gradient),
-        Want::Both => fit
-            .value_and_gradient(request.point, request.gradient)
-            .map(Given::Both),
-    };
-    match answer {
+    match request.answer(fit) {
         Ok(given) => Some(given),
         Err(never) => match never {},
     }

@@ -99,43 +99,28 @@ impl ConjugateGradient {
     }
 }
 
-/// The products that `beta` is made of; `y` is the change of the gradient.
-#[derive(Clone, Copy, Debug)]
-pub(super) struct Terms {
-    pub(super) slope: f64,
-    pub(super) g_g: f64,
-    pub(super) g_y: f64,
-    pub(super) d_y: f64,
-    pub(super) y_y: f64,
-}
-
-impl Terms {
-    fn of<T: Real>(survey: &Survey<T>) -> Self {
-        Terms {
-            slope: survey.slope.to_double(),
-            g_g: survey.square.to_double(),
-            g_y: survey.change_gradient.to_double(),
-            d_y: survey.change_slope.to_double(),
-            y_y: survey.change_square.to_double(),
-        }
-    }
-
-    /// `beta` after a move from a gradient with this square; that of Hager and Zhang without its lower bound.
-    pub(super) fn beta(&self, update: Update, square: f64) -> f64 {
-        match update {
-            Update::FletcherReeves => self.g_g / square,
-            Update::PolakRibierePlus => (self.g_y / square).max(0.0),
-            Update::HestenesStiefelPlus => (self.g_y / self.d_y).max(0.0),
-            Update::DaiYuan => self.g_g / self.d_y,
-            // eq. 1.3
-            Update::HagerZhang => (self.g_y - 2.0 * self.slope * (self.y_y / self.d_y)) / self.d_y,
+/// `beta` after a move from a gradient with this square; that of Hager and Zhang without its lower bound.
+pub(super) fn formula<T: Real>(update: Update, survey: &Survey<T>, square: f64) -> f64 {
+    let (g_g, g_y) = (
+        survey.square.to_double(),
+        survey.change_gradient.to_double(),
+    );
+    let d_y = survey.change_slope.to_double();
+    match update {
+        Update::FletcherReeves => g_g / square,
+        Update::PolakRibierePlus => (g_y / square).max(0.0),
+        Update::HestenesStiefelPlus => (g_y / d_y).max(0.0),
+        Update::DaiYuan => g_g / d_y,
+        Update::HagerZhang => {
+            let y_y = survey.change_square.to_double();
+            (g_y - 2.0 * survey.slope.to_double() * (y_y / d_y)) / d_y // eq. 1.3
         }
     }
 }
 
 /// `beta` after a move.
 fn beta<T: Real>(update: Update, survey: &Survey<T>, square: f64) -> f64 {
-    let beta = Terms::of(survey).beta(update, square);
+    let beta = formula(update, survey, square);
     if update != Update::HagerZhang {
         return beta;
     }

@@ -96,7 +96,7 @@ pub trait Direction<V: Vector> {
 
     /// Looks at the gradient `g` at a trial point, where `old` is the gradient at the point before and `d` the direction between
     /// the two: its slope, its largest component, and what the direction will want to know of it if the trial is accepted. The
-    /// gradient of a move is always the one surveyed last.
+    /// gradient of a move is always the one surveyed last, and moves follow one another: each begins where the one before ended.
     ///
     /// Default: everything that a [`Survey`] holds, in the one pass of [`Vector::survey`].
     fn survey(&mut self, g: &V, old: &V, d: &V) -> Survey<V::Scalar> {

@@ -1,6 +1,6 @@
 //! Steepest descent and conjugate gradients in the metric of a preconditioner.
 
-use super::conjugate_gradient::{Terms, Update};
+use super::conjugate_gradient::{Update, formula};
 use super::preconditioner::Preconditioner;
 use super::{Direction, Moved};
 use crate::vector::Survey;
@@ -96,24 +96,23 @@ impl<V: Vector, P: Preconditioner<V>> Direction<V> for PreconditionedGradient<V,
 
     fn moved(&mut self, moved: Moved<'_, V>) {
         let Some(z) = &mut self.z else { return };
-        let dot = |a: &V, b: &V| a.dot(b).to_double();
         let (g, d) = (moved.g_new, &*moved.direction);
-        let square = dot(moved.g_old, z);
-        let slope = moved.survey.slope.to_double();
+        let square = moved.g_old.dot(z).to_double();
         let y = moved.g_old;
         y.subtract_from(g);
-        let y_z_old = dot(y, z);
+        let y_z_old = y.dot(z);
         self.preconditioner.apply(moved.x_new, g, z);
         self.fresh = true;
-        let y_z = dot(y, z);
-        let terms = Terms {
-            slope,
-            g_g: dot(g, z),
-            g_y: y_z,
-            d_y: dot(d, y),
-            y_y: y_z - y_z_old,
+        let y_z = y.dot(z);
+        // The products of the formulas, in the metric of `P`.
+        let survey = Survey {
+            square: g.dot(z),
+            change_gradient: y_z,
+            change_square: y_z - y_z_old,
+            change_slope: d.dot(y),
+            ..moved.survey
         };
-        self.beta = Some(terms.beta(self.update, square)).filter(|b| b.is_finite());
+        self.beta = Some(formula(self.update, &survey, square)).filter(|b| b.is_finite());
     }
 
     fn reset(&mut self) {

@@ -14,8 +14,7 @@ use super::record::{Ending, Record, correct_digits};
 use super::task::{AnyObjective, Task};
 use super::trials::{TrialKeeper, TrialLog};
 use crate::{
-    Acceptance, Descent, Direction, Evaluations, Given, Report, Request, Run, RunEnding,
-    StepFinder, Want,
+    Acceptance, Descent, Direction, Evaluations, Given, Report, Run, RunEnding, StepFinder, Want,
 };
 
 /// What is to be run, and how.
@@ -133,7 +132,7 @@ impl Conductor<'_> {
                 return Some(spent);
             }
             self.pending = Some(request.want);
-            let given = match evaluate(objective, request) {
+            let given = match request.answer(&mut **objective) {
                 Ok(given) => given,
                 Err(error) => {
                     self.note_pending();
@@ -228,28 +227,6 @@ impl Conductor<'_> {
     fn end(&mut self, ending: Ending, note: &str) {
         self.record.ending = ending;
         self.record.note = on_one_line(note);
-    }
-}
-
-fn evaluate(
-    objective: &mut AnyObjective,
-    request: Request<'_, Vec<f64>>,
-) -> Result<Given<f64>, String> {
-    use crate::Objective;
-    let Request {
-        want,
-        ceiling,
-        point,
-        gradient,
-    } = request;
-    match want {
-        Want::Value => objective.value_up_to(point, ceiling).map(Given::Value),
-        Want::Gradient => objective
-            .gradient(point, gradient)
-            .map(|()| Given::Gradient),
-        Want::Both => objective
-            .value_and_gradient(point, gradient)
-            .map(Given::Both),
     }
 }
 

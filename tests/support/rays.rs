@@ -98,14 +98,14 @@ impl RandomRay {
 }
 
 /// Uniform numbers in `[0, 1)`: G. Marsaglia, "Xorshift RNGs", J. Stat. Software 8 (2003) issue 14, triple (13, 7, 17).
-struct Stream(u64);
+pub(crate) struct Stream(u64);
 
 impl Stream {
-    fn new(seed: u64) -> Self {
+    pub(crate) fn new(seed: u64) -> Self {
         Stream(seed.wrapping_mul(0x9E37_79B9_7F4A_7C15) | 1)
     }
 
-    fn next(&mut self) -> f64 {
+    pub(crate) fn next(&mut self) -> f64 {
         self.0 ^= self.0 << 13;
         self.0 ^= self.0 >> 7;
         self.0 ^= self.0 << 17;

@@ -1,6 +1,6 @@
 //! What a run asks for, and what it may be given.
 
-use crate::Vector;
+use crate::{Objective, Vector};
 
 /// What a run asks for at a point.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -25,6 +25,28 @@ pub struct Request<'a, V: Vector> {
     pub point: &'a V,
     /// Where a gradient goes; holds arbitrary numbers before.
     pub gradient: &'a mut V,
+}
+
+impl<V: Vector> Request<'_, V> {
+    /// What `objective` says: for a loop of your own around a run.
+    ///
+    /// # Errors
+    /// Those of the objective.
+    pub fn answer<O: Objective<V> + ?Sized>(
+        self,
+        objective: &mut O,
+    ) -> Result<Given<V::Scalar>, O::Error> {
+        let (point, gradient) = (self.point, self.gradient);
+        match self.want {
+            Want::Value => objective.value_up_to(point, self.ceiling).map(Given::Value),
+            Want::Gradient => objective
+                .gradient(point, gradient)
+                .map(|()| Given::Gradient),
+            Want::Both => objective
+                .value_and_gradient(point, gradient)
+                .map(Given::Both),
+        }
+    }
 }
 
 /// What is given to a run. More than was wanted is welcome.

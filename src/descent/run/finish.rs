@@ -1,6 +1,6 @@
 //! The loop form of a run, and its end.
 
-use super::{Given, Request, Run, Want};
+use super::Run;
 use crate::descent::{Descent, DescentError, Report, RunEnding};
 use crate::{Acceptance, Direction, Objective, Real, StepFinder, Vector};
 use core::ops::ControlFlow;
@@ -75,22 +75,8 @@ where
     ) -> Result<Report<V>, DescentError<V, O::Error>> {
         self.settings.cost = objective.cost();
         self.search.set_cost(self.settings.cost);
-        while let Some(Request {
-            want,
-            ceiling,
-            point,
-            gradient,
-        }) = self.request()
-        {
-            let given = match want {
-                Want::Value => objective.value_up_to(point, ceiling).map(Given::Value),
-                Want::Gradient => objective
-                    .gradient(point, gradient)
-                    .map(|()| Given::Gradient),
-                Want::Both => objective
-                    .value_and_gradient(point, gradient)
-                    .map(Given::Both),
-            };
+        while let Some(request) = self.request() {
+            let given = request.answer(&mut objective);
             let before = self.iterations;
             let moved = given.and_then(|given| {
                 let answered = self.supply(given);

@@ -19,8 +19,7 @@ where
         };
         let limits = self.limits();
         let step = step.max(limits.lower()).min(limits.upper());
-        self.trial.step_from(&self.x, step, &self.d);
-        if self.trial.max_abs().is_finite() {
+        if self.trial.finite_step_from(&self.x, step, &self.d) {
             self.phase = Phase::Probing { step, first };
         } else {
             self.begin_search(first);

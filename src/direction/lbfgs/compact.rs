@@ -11,8 +11,6 @@ pub(super) struct Products {
     moves_changes: Vec<f64>,
     /// `y_i.y_j`.
     changes: Vec<f64>,
-    /// `1 / s_i.y_i`.
-    inverse_curvatures: Vec<f64>,
     /// `s_i.g` and `y_i.g` with the gradient `g` at the point of the run.
     pub(super) moves_gradient: Vec<f64>,
     pub(super) changes_gradient: Vec<f64>,
@@ -29,7 +27,6 @@ impl Products {
             memory,
             moves_changes: alloc::vec![0.0; memory * memory],
             changes: alloc::vec![0.0; memory * memory],
-            inverse_curvatures: alloc::vec![0.0; memory],
             moves_gradient: alloc::vec![0.0; memory],
             changes_gradient: alloc::vec![0.0; memory],
             order: Vec::with_capacity(memory),
@@ -43,9 +40,6 @@ impl Products {
         self.moves_changes[older * self.memory + newest] = s_y;
         self.changes[older * self.memory + newest] = y_y;
         self.changes[newest * self.memory + older] = y_y;
-        if older == newest {
-            self.inverse_curvatures[newest] = 1.0 / s_y;
-        }
     }
 
     /// The pairs held are these, from the oldest to the newest.
@@ -56,7 +50,7 @@ impl Products {
 
     /// The coefficients of `s` and `y` of each pair in the direction
     /// `-H g`, by pair number, and the slope along it; `None` where the terms of the slope cancel so far that the matrices have
-    /// lost their accuracy.
+    /// lost their accuracy. `inverse_curvatures` are the `1 / s_i.y_i`.
     ///
     /// Byrd, Nocedal & Schnabel (1994), eq. 3.1:
     /// `H = gamma I + [S gamma Y] [[R^-T (D + gamma Y'Y) R^-1, -R^-T], [-R^-1, 0]] [S'; gamma Y']`.
@@ -64,6 +58,7 @@ impl Products {
         &mut self,
         gamma: f64,
         g_g: f64,
+        inverse_curvatures: &[f64],
         mut coefficient: impl FnMut(usize, f64, f64),
     ) -> Option<f64> {
         let (m, order) = (self.memory, &self.order[..]);
@@ -76,7 +71,7 @@ impl Products {
             for b in a + 1..k {
                 sum -= row[order[b]] * u[b];
             }
-            u[a] = sum * self.inverse_curvatures[order[a]];
+            u[a] = sum * inverse_curvatures[order[a]];
         }
         // w = R^-T (D u + gamma (Y'Y u - Y'g)), from the oldest pair to the newest.
         for a in 0..k {
@@ -91,7 +86,7 @@ impl Products {
             for b in 0..a {
                 sum -= self.moves_changes[order[b] * m + i] * w[b];
             }
-            w[a] = sum * self.inverse_curvatures[i];
+            w[a] = sum * inverse_curvatures[i];
         }
         let (mut slope, mut size) = (-gamma * g_g, gamma * g_g);
         for a in 0..k {

@@ -99,8 +99,8 @@ impl<V: Vector> History<V> for Pairs<V> {
 
 /// The pairs rounded to single precision, for a run in double precision: half the memory and half the traffic.
 ///
-/// Rounding a pair changes it by at most 6e-8 of its largest numbers; numbers beyond 1e38, or all below 1e-38, are lost, and the
-/// pair with them. What it does to the number of iterations: `examples/memory_speed.rs`.
+/// Rounding a pair changes it by at most 6e-8 of its largest numbers; numbers beyond 1e38 become infinite, and
+/// the driver starts the direction over; those below 1e-38 lose digits or vanish. What it saves: `examples/memory_speed.rs`.
 #[derive(Clone, Debug, Default)]
 pub struct SinglePairs {
     vectors: Vec<Vec<f32>>,

@@ -280,12 +280,14 @@ impl<V: Vector, H: History<V>, P: Preconditioner<V>> Lbfgs<V, H, P> {
     fn combined(&mut self, g: &V, d: &mut V) -> Option<V::Scalar> {
         let square = self.square?;
         let (steps, coefficients) = (&self.steps, &mut self.coefficients);
+        let each = |i: usize, s, y| {
+            coefficients[2 * i] = V::Scalar::of(s * steps[i]);
+            coefficients[2 * i + 1] = V::Scalar::of(y);
+        };
+        let (gamma, inverse) = (self.gamma, &self.inverse_curvatures);
         let slope = self
             .products
-            .direction::<V::Scalar>(self.gamma, square, |i, s, y| {
-                coefficients[2 * i] = V::Scalar::of(s * steps[i]);
-                coefficients[2 * i + 1] = V::Scalar::of(y);
-            })?;
+            .direction::<V::Scalar>(gamma, square, inverse, each)?;
         let all = &self.coefficients[..2 * self.held];
         if !all.iter().all(|c| c.is_finite()) {
             return None;

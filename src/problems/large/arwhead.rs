@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// ARWHEAD, whose Hessian is an arrowhead: every variable is tied to the last. In `n` variables, at least 2.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn arwhead(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 2..=GREATEST)?;
     let start = core::iter::repeat_n(1.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Arwhead, start).described(0.0, "(1, ..., 1, 0)"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Arwhead, start).described(0.0, "(1, ..., 1, 0)"))
 }
 
 const NAME: &str = "ARWHEAD";

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// BDQRTIC, a banded quartic with an arrow, in `n` variables, at least 5.
 ///
@@ -19,7 +19,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn bdqrtic(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 5..=GREATEST)?;
     let start = core::iter::repeat_n(1.0, n);
-    let problem = Problem::one_pass(NAME, CUTE, Bdqrtic, start);
+    let problem = Problem::one_pass(NAME, BONGARTZ, Bdqrtic, start);
     let minimum = match n {
         100 => 378.769191808684,
         1000 => 3983.81795057654,

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// COSINE, a chain of cosines, in `n` variables, at least 2: many minima, and saddles between.
 ///
@@ -19,7 +19,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn cosine(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 2..=GREATEST)?;
     let start = core::iter::repeat_n(1.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Cosine, start).set(
+    Ok(Problem::one_pass(NAME, BONGARTZ, Cosine, start).set(
         -((n - 1) as f64),
         "every xi^2 - x(i+1) / 2 an odd multiple of pi",
     ))

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// CRAGGLVY, the extended function of Cragg and Levy, in `n` variables, even, at least 4: sixth and eighth powers, and poles.
 ///
@@ -27,7 +27,7 @@ pub fn cragg_levy(n: usize) -> Result<Problem, WrongSize> {
     }
     WrongSize::check(NAME, n, 4..=GREATEST)?;
     let start = (0..n).map(|j| if j == 0 { 1.0 } else { 2.0 });
-    let problem = Problem::one_pass(NAME, CUTE, CraggLevy, start);
+    let problem = Problem::one_pass(NAME, BONGARTZ, CraggLevy, start);
     let minimum = match n {
         4 => return Ok(problem.singular(0.0, &[0.0, 1.0, 1.0, 1.0])),
         50 => 15.3725094654287,

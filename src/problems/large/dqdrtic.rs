@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// DQDRTIC, a diagonal quadratic, in `n` variables, at least 3: eigenvalues in four clusters.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn dqdrtic(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 3..=GREATEST)?;
     let start = core::iter::repeat_n(3.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Dqdrtic, start).described(0.0, "the origin"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Dqdrtic, start).described(0.0, "the origin"))
 }
 
 const NAME: &str = "DQDRTIC";

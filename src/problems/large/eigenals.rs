@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, Problem, Slopes, Total, WrongSize};
 
 /// EIGENALS: the eigenvalues and eigenvectors of a diagonal matrix, as least squares, in `n = p (p + 1)` variables.
 ///
@@ -32,7 +32,7 @@ pub fn eigenals(n: usize) -> Result<Problem, WrongSize> {
         let diagonal = j < p || (j - p).is_multiple_of(p + 1);
         if diagonal { 1.0 } else { 0.0 }
     });
-    Ok(Problem::one_pass(NAME, CUTE, Eigenals, start)
+    Ok(Problem::one_pass(NAME, BONGARTZ, Eigenals, start)
         .described(0.0, "D = (1, ..., p), Q the identity, and others"))
 }
 

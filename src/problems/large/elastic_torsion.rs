@@ -1,7 +1,7 @@
 use core::f64::consts::PI;
 
 use super::grid::Grid;
-use super::minimal_surface::MINPACK_2;
+use super::minimal_surface::AVERICK;
 use super::{Formula, Problem, Slopes, Total, WrongSize};
 
 /// The torsion of an elastic bar, in `n = nx ny` variables: the stress potential at the inner nodes of a grid on the unit square.
@@ -26,7 +26,7 @@ pub fn elastic_torsion(nx: usize, ny: usize) -> Result<Problem, WrongSize> {
     let grid = Grid::new(NAME, [nx, ny], [1.0, 1.0])?;
     let start = grid.inner().map(|node| grid.depth(node));
     Ok(
-        Problem::one_pass(NAME, MINPACK_2, ElasticTorsion { grid }, start)
+        Problem::one_pass(NAME, AVERICK, ElasticTorsion { grid }, start)
             .described(minimum(&grid), "the solution of a linear system"),
     )
 }

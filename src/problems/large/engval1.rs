@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// ENGVAL1, a convex quartic chain, in `n` variables, at least 2.
 ///
@@ -19,7 +19,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn engval1(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 2..=GREATEST)?;
     let start = core::iter::repeat_n(2.0, n);
-    let problem = Problem::one_pass(NAME, CUTE, Engval1, start);
+    let problem = Problem::one_pass(NAME, BONGARTZ, Engval1, start);
     let minimum = match n {
         2 => return Ok(problem.strict(0.0, &[1.0, 0.0])),
         100 => 109.088136143092,

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, Problem, Slopes, Total, WrongSize};
 
 /// The extended Wood function, `n / 4` independent blocks of four.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, Problem, Slopes, Total, WrongSize};
 pub fn extended_wood(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check_multiple(NAME, n, 4, "a multiple of 4, at least 4")?;
     let start = (0..n).map(|j| if j % 2 == 0 { -3.0 } else { -1.0 });
-    Ok(Problem::one_pass(NAME, CUTE, ExtendedWood, start).described(0.0, "(1, ..., 1)"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, ExtendedWood, start).described(0.0, "(1, ..., 1)"))
 }
 
 const NAME: &str = "Extended Wood";

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// FREUROTH, the chained function of Freudenstein and Roth, in `n` variables, at least 2.
 ///
@@ -25,7 +25,7 @@ pub fn freuroth(n: usize) -> Result<Problem, WrongSize> {
         1 => -2.0,
         _ => 0.0,
     });
-    let problem = Problem::one_pass(NAME, CUTE, Freuroth, start);
+    let problem = Problem::one_pass(NAME, BONGARTZ, Freuroth, start);
     let minimum = match n {
         10 => 1014.0640725745184,
         100 => 11964.57734865419,

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// LIARWHD, a quartic whose Hessian is an arrowhead: every variable is tied to the first. In `n` variables, at least 1.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn liarwhd(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 1..=GREATEST)?;
     let start = core::iter::repeat_n(4.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Liarwhd, start).described(0.0, "(1, ..., 1)"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Liarwhd, start).described(0.0, "(1, ..., 1)"))
 }
 
 const NAME: &str = "LIARWHD";

@@ -94,15 +94,10 @@ pub fn minimal_surface(
     };
     let start = core::iter::repeat_n(frame.mean(), nx * ny);
     let formula = MinimalSurface { grid, frame };
-    Ok(Problem::one_pass(
-        boundary.name(),
-        MINPACK_2,
-        formula,
-        start,
-    ))
+    Ok(Problem::one_pass(boundary.name(), AVERICK, formula, start))
 }
 
-pub(super) const MINPACK_2: &str = "B. M. Averick, R. G. Carter, J. J. Moré, G. Xue, The MINPACK-2 test problem collection, \
+pub(super) const AVERICK: &str = "B. M. Averick, R. G. Carter, J. J. Moré, G. Xue, The MINPACK-2 test problem collection, \
      Argonne National Laboratory, Preprint MCS-P153-0692, 1992";
 
 /// The heights on the four edges, corners in two of them.

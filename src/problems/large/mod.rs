@@ -130,5 +130,5 @@ const LEAST: usize = 5;
 const MGH: &str = "J. J. Moré, B. S. Garbow, K. E. Hillstrom, Testing unconstrained optimization software, \
      ACM Trans. Math. Software 7(1), 1981, 17-41";
 
-const CUTE: &str = "I. Bongartz, A. R. Conn, N. Gould, Ph. L. Toint, CUTE: constrained and unconstrained testing environment, \
+const BONGARTZ: &str = "I. Bongartz, A. R. Conn, N. Gould, Ph. L. Toint, CUTE: constrained and unconstrained testing environment, \
      ACM Trans. Math. Software 21(1), 1995, 123-160";

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// NONDIA, a nondiagonal relative of the Rosenbrock function, in `n` variables, at least 2.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn nondia(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 2..=GREATEST)?;
     let start = core::iter::repeat_n(-1.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Nondia, start)
+    Ok(Problem::one_pass(NAME, BONGARTZ, Nondia, start)
         .set(0.0, "x1 = 1, xi = 1 or -1 for 1 < i < n, xn anything"))
 }
 

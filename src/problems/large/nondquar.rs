@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// NONDQUAR, a nondiagonal quartic, in `n` variables, at least 3: the Hessian has rank 2 at the minimizer.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn nondquar(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 3..=GREATEST)?;
     let start = (0..n).map(|j| if j % 2 == 0 { 1.0 } else { -1.0 });
-    Ok(Problem::one_pass(NAME, CUTE, Nondquar, start).described(0.0, "the origin"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Nondquar, start).described(0.0, "the origin"))
 }
 
 const NAME: &str = "NONDQUAR";

@@ -1,5 +1,5 @@
 use super::grid::Grid;
-use super::minimal_surface::MINPACK_2;
+use super::minimal_surface::AVERICK;
 use super::{Formula, Problem, Slopes, Total, WrongSize};
 
 /// Optimal design with composite materials, in `n = nx ny` variables: the stress potential at the inner nodes of a grid on the
@@ -33,7 +33,7 @@ pub fn optimal_design(nx: usize, ny: usize) -> Result<Problem, WrongSize> {
     let grid = Grid::new(NAME, [nx, ny], [1.0, 1.0])?;
     let start = grid.inner().map(|node| -grid.depth(node).powi(2));
     let formula = OptimalDesign { grid };
-    Ok(Problem::one_pass(NAME, MINPACK_2, formula, start))
+    Ok(Problem::one_pass(NAME, AVERICK, formula, start))
 }
 
 const NAME: &str = "Optimal design with composites";

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// QUARTC, separate fourth powers, in `n` variables, at least 1: the Hessian vanishes at the minimizer.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn quartc(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 1..=GREATEST)?;
     let start = core::iter::repeat_n(2.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Quartc, start).described(0.0, "xi = i"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Quartc, start).described(0.0, "xi = i"))
 }
 
 const NAME: &str = "QUARTC";

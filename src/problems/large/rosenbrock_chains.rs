@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// The chained Rosenbrock function, in `n` variables, at least 2: one curved valley through all of them.
 ///
@@ -53,7 +53,7 @@ pub fn genrose(n: usize) -> Result<Problem, WrongSize> {
         offset: 1.0,
         pulled: Pulled::Second,
     };
-    Ok(Problem::one_pass(GENROSE, CUTE, formula, start)
+    Ok(Problem::one_pass(GENROSE, BONGARTZ, formula, start)
         .described(1.0, "(1, ..., 1)")
         .described(1.0, "(-1, 1, ..., 1)"))
 }

@@ -1,4 +1,4 @@
-use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
+use super::{BONGARTZ, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 
 /// TRIDIA, a quadratic with a tridiagonal Hessian, in `n` variables, at least 1.
 ///
@@ -18,7 +18,7 @@ use super::{CUTE, Formula, GREATEST, Problem, Slopes, Total, WrongSize};
 pub fn tridia(n: usize) -> Result<Problem, WrongSize> {
     WrongSize::check(NAME, n, 1..=GREATEST)?;
     let start = core::iter::repeat_n(1.0, n);
-    Ok(Problem::one_pass(NAME, CUTE, Tridia, start).described(0.0, "xi = 2^(1-i)"))
+    Ok(Problem::one_pass(NAME, BONGARTZ, Tridia, start).described(0.0, "xi = 2^(1-i)"))
 }
 
 const NAME: &str = "TRIDIA";
